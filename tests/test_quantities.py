@@ -42,7 +42,7 @@ REGISTRY = pint.UnitRegistry()
 def in_pint(unit: str) -> "pint.Quantity":
     name = PINT_NAMES.get(unit, unit).replace("fl_oz", "fluid_ounce")
     name = re.sub(r"\b(delta_)?(deg[CF])\b", r"delta_\2", name)
-    return REGISTRY.Quantity(1.0, name.replace("Btu", "Btu_it"))
+    return REGISTRY.parse_expression(name.replace("Btu", "Btu_it")) * REGISTRY.Quantity(1.0)
 
 
 @pytest.mark.parametrize(
