@@ -27,12 +27,12 @@ def bisected(f: Callable[[Array], Array], lower: ArrayLike, upper: ArrayLike) ->
         middle = 0.5 * (a + b)
         stay = np.sign(f(middle)) == left
         a, b = np.where(stay, middle, a), np.where(stay, b, middle)
-    return 0.5 * (a + b)
+    return np.asarray(0.5 * (a + b))
 
 
 def scanned(f: Callable[[Array], Array], step: float, count: int, start: float = 1e-9) -> Array:
     """The first `count` roots above `start` of an f whose roots lie further apart than `step`."""
-    x = start + step * np.arange(int(20 * count) + 400)
+    x: Array = start + step * np.arange(20.0 * count + 400)
     sign = np.sign(f(x))
     change = np.flatnonzero(sign[1:] * sign[:-1] < 0)[:count]
     if len(change) < count:
@@ -41,12 +41,12 @@ def scanned(f: Callable[[Array], Array], step: float, count: int, start: float =
 
 
 def modes(*values: ArrayLike) -> list[Array]:
-    """Broadcast the values against each other and add a last axis of length one, for the terms of a series."""
+    """Broadcast the values against each other; add a last axis of length one, for the terms of a series."""
     return [np.asarray(x, dtype=float)[..., None] for x in np.broadcast_arrays(*values)]
 
 
 def j1_zeros(count: int) -> Array:
-    """Positive zeros of J1: McMahon's expansion polished by Newton's method (Abramowitz & Stegun 1964, 9.5.12)."""
+    """Positive zeros of J1: McMahon's expansion (Abramowitz & Stegun 1964, 9.5.12) and Newton's method."""
     b = (np.arange(1, count + 1) + 0.25) * np.pi
     z = b - 3 / (8 * b) + 36 / (3 * (8 * b) ** 3)
     for _ in range(4):
@@ -55,7 +55,7 @@ def j1_zeros(count: int) -> Array:
 
 
 def j0_zeros(count: int) -> Array:
-    """Positive zeros of J0: McMahon's expansion polished by Newton's method (Abramowitz & Stegun 1964, 9.5.12)."""
+    """Positive zeros of J0: McMahon's expansion (Abramowitz & Stegun 1964, 9.5.12) and Newton's method."""
     b = (np.arange(1, count + 1) - 0.25) * np.pi
     z = b + 1 / (8 * b) - 124 / (3 * (8 * b) ** 3)
     for _ in range(4):

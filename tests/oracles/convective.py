@@ -1,9 +1,9 @@
 """Slab, long cylinder and sphere that start uniform and meet a fluid: the full Fourier series.
 
-Source: Incropera, DeWitt, Bergman, Lavine, Fundamentals of Heat and Mass Transfer, 6th ed. 2007, sec. 5.5 and 5.6;
-its Table 5.1 rounds the first eigenvalues and coefficients. biot = h L/k with L the half thickness (or the thickness
-of a slab insulated on one face), or h R/k; fourier = alpha t/L^2. biot = inf holds the face. theta =
-(T - T_fluid)/(T_start - T_fluid). position is x/L or r/R.
+Source: Incropera, DeWitt, Bergman, Lavine, Fundamentals of Heat and Mass Transfer, 6th ed. 2007, sec. 5.5 and
+5.6; its Table 5.1 rounds the first eigenvalues and coefficients. biot = h L/k with L the half thickness (or
+the thickness of a slab insulated on one face), or h R/k; fourier = alpha t/L^2. biot = inf holds the face.
+theta = (T - T_fluid)/(T_start - T_fluid). position is x/L or r/R.
 """
 
 from __future__ import annotations
@@ -20,7 +20,7 @@ from ._series import Array, bisected, j0_zeros, j1_zeros, modes
 
 @dataclass(frozen=True)
 class Shape:
-    """What differs between the three bodies; `held` are the eigenvalues of a held face, `free` of an insulated one."""
+    """What differs between the bodies; `held`, `free`: eigenvalues with a held and an insulated face."""
 
     held: Callable[[int], Array]
     free: Callable[[int], Array]
@@ -35,8 +35,8 @@ def _sphere_mean(z: Array) -> Array:
 
 
 SLAB = Shape(
-    held=lambda n: (np.arange(n) + 0.5) * np.pi,
-    free=lambda n: np.arange(n) * np.pi,
+    held=lambda n: np.asarray((np.arange(n) + 0.5) * np.pi),
+    free=lambda n: np.asarray(np.arange(n) * np.pi),
     condition=lambda z, biot: z * np.sin(z) - biot * np.cos(z),
     coefficient=lambda z: 4 * np.sin(z) / (2 * z + np.sin(2 * z)),
     mode=np.cos,
@@ -51,8 +51,8 @@ CYLINDER = Shape(
     mean=lambda z: 2 * j1(z) / z,
 )
 SPHERE = Shape(
-    held=lambda n: np.arange(1, n + 1) * np.pi,
-    free=lambda n: np.concatenate([[1e-6], (np.arange(1, n) + 0.0) * np.pi]),
+    held=lambda n: np.asarray(np.arange(1, n + 1) * np.pi),
+    free=lambda n: np.concatenate([[1e-6], np.pi * np.arange(1.0, n)]),
     condition=lambda z, biot: z * np.cos(z) - (1 - biot) * np.sin(z),
     coefficient=lambda z: 4 * (np.sin(z) - z * np.cos(z)) / (2 * z - np.sin(2 * z)),
     mode=lambda x: np.sinc(x / np.pi),
@@ -94,8 +94,9 @@ def short_cylinder(
 ) -> Array:
     """theta of a cylinder of `size` (radius, half height) [m] with a film all round: product of two bodies.
 
-    conductivity (k_r, k_z) [W/(m K)]; z from mid-height. Source of the product rule: Kreith, Manglik, Bohn, Principles of
-    Heat Transfer, 7th ed., Example 2.14 (isotropic); with principal axes r and z each factor takes its own conductivity.
+    conductivity (k_r, k_z) [W/(m K)]; z from mid-height. Source of the product rule: Kreith, Manglik, Bohn,
+    Principles of Heat Transfer, 7th ed., Example 2.14 (isotropic); with principal axes r and z each factor
+    takes its own conductivity.
     """
     return _product((CYLINDER, SLAB), (r, z), time, size, conductivity, heat_capacity, film)
 
@@ -109,7 +110,7 @@ def rectangular_bar(
     heat_capacity: float,
     film: float,
 ) -> Array:
-    """theta of a long bar of half sizes `size` [m] with a film (or held faces, film = inf) on all four sides."""
+    """theta of a long bar of half sizes `size` [m]; film on all four sides, held faces if it is inf."""
     return _product((SLAB, SLAB), (x, y), time, size, conductivity, heat_capacity, film)
 
 

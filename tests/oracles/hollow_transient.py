@@ -1,8 +1,8 @@
 """Exact transients of a hollow cylinder, a < r < b: cross-product Bessel eigenfunctions.
 
-Source: H.S. Carslaw, J.C. Jaeger, Conduction of Heat in Solids, 2nd ed. 1959, sec. 7.10 and 13.4 for the method. A face
-is described by its Biot number per length H = h/k [1/m]; H = inf holds the face at its fluid's temperature, H = 0
-insulates it.
+Source: H.S. Carslaw, J.C. Jaeger, Conduction of Heat in Solids, 2nd ed. 1959, sec. 7.10 and 13.4 for the
+method. A face is described by its Biot number per length H = h/k [1/m]; H = inf holds the face at its fluid's
+temperature, H = 0 insulates it.
 """
 
 from __future__ import annotations
@@ -57,12 +57,12 @@ class HollowCylinder:
         return inside + slope * films[0], slope
 
     def _start_integral(self, m: Array, level: float, slope: float) -> Array:
-        """Integral of r (level + slope ln(r/a)) phi dr: harmonic profiles reduce to their ends by Green's identity."""
+        """Integral of r (level + slope ln(r/a)) phi dr; a harmonic profile leaves only its ends (Green)."""
         ends = []
         for r in (self.a, self.b):
             phi, derivative = self.eigenfunction(m, r)
             ends.append(r * derivative * (level + slope * np.log(r / self.a)) - slope * phi)
-        return -(ends[1] - ends[0]) / m**2
+        return np.asarray((ends[0] - ends[1]) / m**2)
 
     def _norm(self, m: Array) -> Array:
         """Integral of r phi^2 dr."""
@@ -70,7 +70,7 @@ class HollowCylinder:
         for r in (self.a, self.b):
             phi, derivative = self.eigenfunction(m, r)
             ends.append(r**2 / 2 * (phi**2 + (derivative / m) ** 2))
-        return ends[1] - ends[0]
+        return np.asarray(ends[1] - ends[0])
 
     def temperature(
         self, r: ArrayLike, time: ArrayLike, start: float = 1.0, inside: float = 0.0, outside: float = 0.0

@@ -1,4 +1,6 @@
-"""Exact answers of bodies without inner gradients. Capacities in J/K, conductances in W/K, times in s, temperatures in C."""
+"""Exact answers of bodies without inner gradients.
+
+Capacities in J/K, conductances in W/K, times in s, temperatures in C."""
 
 from __future__ import annotations
 
@@ -11,18 +13,20 @@ from ._series import STEFAN_BOLTZMANN, Array
 
 
 def lumped_time(time_constant: float, start: float, end: float, fluid: float) -> float:
-    """Time to go from `start` to `end` in a fluid: tau ln(...). Source: Incropera et al., 6th ed. 2007, sec. 5.1."""
+    """Time from `start` to `end` in a fluid. Source: Incropera et al., 6th ed. 2007, sec. 5.1."""
     return float(time_constant * np.log((start - fluid) / (end - fluid)))
 
 
-def radiating_bead(film: float, gas: float, emissivity: float, walls: float) -> float:
+def radiating_bead(
+    film: float, gas: float, emissivity: float, walls: float, stefan_boltzmann: float = STEFAN_BOLTZMANN
+) -> float:
     """Steady temperature [K] of a bead in gas [K] that exchanges radiation with walls [K].
 
     Source: Incropera et al., 6th ed. 2007, Example 5.2 (p. 265).
     """
 
     def balance(bead: float) -> float:
-        return film * (gas - bead) + emissivity * STEFAN_BOLTZMANN * (walls**4 - bead**4)
+        return film * (gas - bead) + emissivity * stefan_boltzmann * (walls**4 - bead**4)
 
     return float(brentq(balance, min(gas, walls), max(gas, walls), xtol=1e-12))
 
@@ -32,10 +36,10 @@ def draining_cylinder(
 ) -> Array:
     """Dimensionless drink temperature in a cylinder whose level falls evenly from `level` to 0 in `duration`.
 
-    Heat leaves with `film` [W/(m2 K)] through the wetted side and the base only; the drink that leaves has the
-    mixed temperature; heat_capacity [J/(m3 K)]. With s the fall of the level [m/s],
-    dT/dt = -film (2/R + 1/L(t)) T / heat_capacity gives exp(-2 U t/(c R)) (1 - s t/L0)^(U/(c s)).
-    Source: own derivation, no published value.
+    Heat leaves with `film` [W/(m2 K)] through the wetted side and the base only; the drink that leaves has
+    the mixed temperature; heat_capacity [J/(m3 K)]. With s the fall of the level [m/s], dT/dt = -film (2/R +
+    1/L(t)) T / heat_capacity gives exp(-2 U t/(c R)) (1 - s t/L0)^(U/(c s)). Source: own derivation, no
+    published value.
     """
     time = np.asarray(time, dtype=float)
     fall = level / duration
@@ -44,7 +48,7 @@ def draining_cylinder(
 
 
 def _two_node_matrix(capacities: tuple[float, float], coupling: float, loss: float) -> Array:
-    """Rate matrix [1/s] of (liquid, wall): joined by `coupling`, the wall loses `loss` to surroundings at 0 C."""
+    """Rate matrix [1/s] of (liquid, wall), joined by `coupling`; the wall loses `loss` to 0 C."""
     liquid, wall = capacities
     return np.array([[-coupling / liquid, coupling / liquid], [coupling / wall, -(coupling + loss) / wall]])
 
@@ -57,7 +61,7 @@ def two_node_time_constants(capacities: tuple[float, float], coupling: float, lo
 def two_node(
     time: ArrayLike, capacities: tuple[float, float], coupling: float, loss: float, start: tuple[float, float]
 ) -> Array:
-    """Liquid and wall temperature above the surroundings, shape time.shape + (2,): exponential of the rate matrix.
+    """Liquid and wall temperature above the surroundings, shape time.shape + (2,), by the matrix exponential.
 
     Source: linear systems theory; no published value.
     """

@@ -1,6 +1,7 @@
 """A manufactured transient in (r, z) with a full conductivity tensor; its source is derived by SymPy.
 
-Source of the method: K. Salari, P. Knupp, Code Verification by the Method of Manufactured Solutions, SAND2000-1444, 2000.
+Source of the method: K. Salari, P. Knupp, Code Verification by the Method of Manufactured Solutions,
+SAND2000-1444, 2000.
 """
 
 from __future__ import annotations
@@ -10,7 +11,7 @@ from dataclasses import dataclass
 from functools import cached_property
 
 import numpy as np
-import sympy as sp
+import sympy as sp  # type: ignore[import-untyped]
 from numpy.typing import ArrayLike
 
 from ._series import Array

@@ -1,7 +1,8 @@
 """Exact steady temperatures in the half section (r, z) of a cylinder: Fourier and Bessel series.
 
-Lengths in m, conductivities in W/(m K), fluxes in W/m2, temperatures in C. r and z broadcast; the result has their
-shape. `terms` is the length of the series: on an edge where the flux jumps the terms fall only as 1/n^2.
+Lengths in m, conductivities in W/(m K), fluxes in W/m2, temperatures in C. r and z broadcast; the result has
+their shape. `terms` is the length of the series: on an edge where the flux jumps the terms fall only as
+1/n^2.
 """
 
 from __future__ import annotations
@@ -16,9 +17,10 @@ from ._series import Array, bisected, j0_zeros, j1_zeros, modes, sinh_ratio
 def hollow_cylinder_wall_flux(r: ArrayLike, z: ArrayLike, terms: int = 4000) -> Array:
     """Hollow cylinder (NAFEMS, axisymmetric, wall flux): .02 < r < .10 m, 0 < z < .14 m, k 52 W/(m K).
 
-    0 C at r = .10, z = 0 and z = .14; at r = .02 a flux of 5e5 W/m2 enters for .04 < z < .10, the rest is insulated.
-    Source: A.D. Cameron, J.A. Casey, G.B. Simpson, Benchmark Tests for Thermal Analysis, NAFEMS (published target
-    T(.04, .04) = 332.97 K = 59.82 C). The sine series in z with modified Bessel functions in r is recomputed.
+    0 C at r = .10, z = 0 and z = .14; at r = .02 a flux of 5e5 W/m2 enters for .04 < z < .10, the rest is
+    insulated. Source: A.D. Cameron, J.A. Casey, G.B. Simpson, Benchmark Tests for Thermal Analysis, NAFEMS
+    (published target T(.04, .04) = 332.97 K = 59.82 C). The sine series in z with modified Bessel functions
+    in r is recomputed.
     """
     ri, ro, height, k, flux = 0.02, 0.10, 0.14, 52.0, 5e5
     r, z = modes(r, z)
@@ -46,11 +48,11 @@ def solid_cylinder_side_flux(r: ArrayLike, z: ArrayLike, terms: int = 4000) -> A
 
 
 def rod_with_side_flux(r: ArrayLike, z: ArrayLike, terms: int = 200) -> Array:
-    """Rod r < .01 m, 0 < z < 1 m, k 33.33 W/(m K), 0 C at z = 0, 500 C at z = 1, 200 W/m2 out through the side.
+    """Rod r < .01 m, 0 < z < 1 m, k 33.33 W/(m K), with 200 W/m2 out through the side.
 
-    Source: AFNOR/SFM, Guide de validation des progiciels de calcul de structures, 1990, TPLA05, which gives the
-    one-dimensional parabola (see `rod_with_side_flux_1d`). The exact field adds (R^2/4 - r^2/2) q/(kR) and end
-    layers in the zeros of J1; recomputed.
+    0 C at z = 0, 500 C at z = 1. Source: AFNOR/SFM, Guide de validation des progiciels de calcul de
+    structures, 1990, TPLA05, which gives the one-dimensional parabola (see `rod_with_side_flux_1d`). The
+    exact field adds (R^2/4 - r^2/2) q/(kR) and end layers in the zeros of J1; recomputed.
     """
     radius, length, k, flux = 0.01, 1.0, 33.33, 200.0
     a = flux / (k * radius)
@@ -70,10 +72,10 @@ def rod_with_side_flux_1d(z: ArrayLike) -> Array:
 
 
 def rod_as_fin(r: ArrayLike, z: ArrayLike, terms: int = 60) -> Array:
-    """Rod r < .01 m, 0 < z < 1 m, k 33.33 W/(m K), 0 C at z = 0, 500 C at z = 1, h 10 W/(m2 K) to 0 C at the side.
+    """Rod r < .01 m, 0 < z < 1 m, k 33.33 W/(m K), with h 10 W/(m2 K) to 0 C at the side.
 
-    Source: AFNOR/SFM, Guide de validation, 1990, TPLA06, which gives the one-dimensional fin. Exact Bessel series
-    in the roots of m J1(m) = Bi J0(m); recomputed.
+    0 C at z = 0, 500 C at z = 1. Source: AFNOR/SFM, Guide de validation, 1990, TPLA06, which gives the
+    one-dimensional fin. Exact Bessel series in the roots of m J1(m) = Bi J0(m); recomputed.
     """
     radius, length, biot = 0.01, 1.0, 10 * 0.01 / 33.33
     r, z = modes(r, z)
@@ -86,7 +88,10 @@ def rod_as_fin(r: ArrayLike, z: ArrayLike, terms: int = 60) -> Array:
 
 
 def rod_as_fin_1d(z: ArrayLike) -> Array:
-    """The one-dimensional form of `rod_as_fin`: 500 sinh(mz)/sinh(mL), m^2 = 2h/(kR). Source: the same, TPLA06."""
+    """The one-dimensional form of `rod_as_fin`: 500 sinh(mz)/sinh(mL), m^2 = 2h/(kR).
+
+    Source: the same, TPLA06.
+    """
     m = np.sqrt(2 * 10 / (33.33 * 0.01))
     return np.asarray(500.0 * sinh_ratio(m * np.asarray(z, dtype=float), m))
 
@@ -115,7 +120,7 @@ def flux_tube_constriction(ratio: float, terms: int = 200_000) -> float:
 
 
 def half_space_constriction() -> dict[str, float]:
-    """Constriction k a R [-] of a disk of radius a on a half-space: isothermal, uniform flux (mean, greatest).
+    """Constriction k a R [-] of a disk of radius a on a half-space: isothermal or uniform flux.
 
     Source: Carslaw & Jaeger, 2nd ed. 1959, sec. 8.2: 1/4, 8/(3 pi^2), 1/pi.
     """

@@ -1,4 +1,6 @@
-"""Exact temperatures in plane bars and rectangles. Lengths in m, times in s, temperatures in C; arguments broadcast."""
+"""Exact temperatures in plane bars and rectangles.
+
+Lengths in m, times in s, temperatures in C; arguments broadcast."""
 
 from __future__ import annotations
 
@@ -10,10 +12,11 @@ from ._series import Array, bisected, modes
 
 
 def bar_with_oscillating_end(x: ArrayLike, time: ArrayLike, terms: int = 2000) -> Array:
-    """NAFEMS T3: bar of .1 m, k 35, c 440.5, rho 7200, 0 C at x = 0 and 100 sin(pi t/40) C at x = .1, 0 C at the start.
+    """NAFEMS T3: bar of .1 m with an end that swings.
 
-    Source: NAFEMS, The Standard NAFEMS Benchmarks, rev. 3, 1990, T3 (published target T(.08 m, 32 s) = 36.60 C).
-    The series follows from Duhamel's theorem; recomputed.
+    k 35, c 440.5, rho 7200; 0 C at x = 0 and 100 sin(pi t/40) C at x = .1; 0 C at the start. Source: NAFEMS,
+    The Standard NAFEMS Benchmarks, rev. 3, 1990, T3 (published target T(.08 m, 32 s) = 36.60 C). The series
+    follows from Duhamel's theorem; recomputed.
     """
     length, amplitude, omega = 0.1, 100.0, np.pi / 40
     diffusivity = 35.0 / (440.5 * 7200.0)
@@ -27,10 +30,11 @@ def bar_with_oscillating_end(x: ArrayLike, time: ArrayLike, terms: int = 2000) -
 
 
 def rectangle_with_films(x: ArrayLike, y: ArrayLike, terms: int = 2000) -> Array:
-    """NAFEMS T4: rectangle .6 x 1.0 m, k 52, 100 C on y = 0, insulated x = 0, h 750 W/(m2 K) to 0 C on x = .6 and y = 1.
+    """NAFEMS T4: rectangle .6 x 1.0 m with two film edges.
 
-    Source: NAFEMS, The Standard NAFEMS Benchmarks, rev. 3, 1990, T4 (published target T(.6, .2) = 18.25 C).
-    Cosine series in the roots of m a tan(m a) = h a/k; recomputed. The corner (.6, 0) is singular.
+    k 52; 100 C on y = 0, insulated x = 0, h 750 W/(m2 K) to 0 C on x = .6 and y = 1. Source: NAFEMS, The
+    Standard NAFEMS Benchmarks, rev. 3, 1990, T4 (published target T(.6, .2) = 18.25 C). Cosine series in the
+    roots of m a tan(m a) = h a/k; recomputed. The corner (.6, 0) is singular.
     """
     a, b, ratio = 0.6, 1.0, 750.0 / 52.0
     x, y = modes(x, y)

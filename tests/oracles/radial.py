@@ -1,6 +1,7 @@
 """Exact steady temperatures through cylinder walls, functions of r alone (one also of z).
 
-Lengths in m, conductivities in W/(m K), film coefficients in W/(m2 K), fluxes in W/m2, temperatures in C. r broadcasts.
+Lengths in m, conductivities in W/(m K), film coefficients in W/(m2 K), fluxes in W/m2, temperatures in C. r
+broadcasts.
 """
 
 from __future__ import annotations
@@ -18,8 +19,8 @@ from ._series import STEFAN_BOLTZMANN, ZERO_CELSIUS, Array
 class CompositeCylinder:
     """Steady heat flow through a layered cylinder.
 
-    resistance[n]: inside film, layers from inside to outside, outside film [m K/W]; temperature[n]: at each face
-    from inside to outside [C]; heat_flow_per_length [W/m].
+    resistance[n]: inside film, layers from inside to outside, outside film [m K/W]; temperature[n]: at each
+    face from inside to outside [C]; heat_flow_per_length [W/m].
     """
 
     resistance: Array
@@ -36,7 +37,8 @@ def composite_cylinder(
 ) -> CompositeCylinder:
     """Layered cylinder between two fluids; `inside` and `outside` are (film coefficient, temperature).
 
-    Source: Incropera, DeWitt, Bergman, Lavine, Fundamentals of Heat and Mass Transfer, 6th ed. 2007, sec. 3.3.
+    Source: Incropera, DeWitt, Bergman, Lavine, Fundamentals of Heat and Mass Transfer, 6th ed. 2007, sec.
+    3.3.
     """
     radii = np.asarray(radii, dtype=float)
     films = [1 / (2 * np.pi * radii[0] * inside[0]), 1 / (2 * np.pi * radii[-1] * outside[0])]
@@ -55,11 +57,11 @@ def hollow_cylinder(
 ) -> tuple[Array, Array]:
     """Temperature and outward heat flux in a hollow cylinder with fixed face temperatures.
 
-    k = (k0, k1): conductivity k0 + k1 T, T in C; `source` [W/m3]. By Kirchhoff's transform theta = k0 T + k1 T^2/2
-    the profile is theta = -source r^2/4 + A ln r + B. Source of the transform: Carslaw & Jaeger, Conduction of Heat
-    in Solids, 2nd ed. 1959, sec. 1.6 (from memory, not re-checked). Cases of this form: A. Toptan et al.,
-    CASL-U-2020-1939-000 = SAND2020-3887R, 2020, doi 10.2172/1614683, II.1 to II.3; AFNOR/SFM, Guide de validation, 1990,
-    TPLA01 and TPLA04; TPNA300.
+    k = (k0, k1): conductivity k0 + k1 T, T in C; `source` [W/m3]. By Kirchhoff's transform theta = k0 T + k1
+    T^2/2 the profile is theta = -source r^2/4 + A ln r + B. Source of the transform: Carslaw & Jaeger,
+    Conduction of Heat in Solids, 2nd ed. 1959, sec. 1.6 (from memory, not re-checked). Cases of this form: A.
+    Toptan et al., CASL-U-2020-1939-000 = SAND2020-3887R, 2020, doi 10.2172/1614683, II.1 to II.3; AFNOR/SFM,
+    Guide de validation, 1990, TPLA01 and TPLA04; TPNA300.
     """
     r = np.asarray(r, dtype=float)
     (ri, ro), (k0, k1) = radii, k
@@ -81,8 +83,8 @@ def hollow_cylinder_film_outside(
 ) -> Array:
     """Hollow cylinder with a flux in at the inner face, a film outside and a uniform source.
 
-    Source: Toptan et al., SAND2020-3887R, 2020, II.4 (source 1200 W/m3); AFNOR/SFM, Guide de validation, 1990, TPLA01
-    (no source).
+    Source: Toptan et al., SAND2020-3887R, 2020, II.4 (source 1200 W/m3); AFNOR/SFM, Guide de validation,
+    1990, TPLA01 (no source).
     """
     r = np.asarray(r, dtype=float)
     (ri, ro), (h, fluid) = radii, outside
@@ -104,9 +106,9 @@ def cylinder_graded_source(r: ArrayLike) -> Array:
 class OrthotropicHollowCylinder:
     """T = a ln r + slope z + b between two films whose fluids warm along z with the same slope.
 
-    Source: AFNOR/SFM, Guide de validation, 1990, TPLA07: k_r 2.89, k_z 40; inside 377 W/(m2 K) to 130 + 12.5 z,
-    outside 339.3 W/(m2 K) to 20 + 12.5 z, 500 W/m2 in at the top and out at the bottom. The radii .030 and .050 m and the
-    height .4 m are inferred from the published flux balance, not read.
+    Source: AFNOR/SFM, Guide de validation, 1990, TPLA07: k_r 2.89, k_z 40; inside 377 W/(m2 K) to 130 + 12.5
+    z, outside 339.3 W/(m2 K) to 20 + 12.5 z, 500 W/m2 in at the top and out at the bottom. The radii .030 and
+    .050 m and the height .4 m are inferred from the published flux balance, not read.
     """
 
     radii: tuple[float, float] = (0.030, 0.050)
@@ -137,8 +139,9 @@ def radiating_hollow_cylinder(
 ) -> tuple[Array, tuple[float, float]]:
     """Hollow cylinder .300 / .391 m, k 40: radiation from 500 C on the inner face, film outside.
 
-    Emissivity .6; outside 142 W/(m2 K) to 20 C. Returns the temperature and the heat fluxes at the inner and outer
-    face. Source: AFNOR/SFM, Guide de validation, 1990, TPNA01, which takes sigma = 5.73e-8 and 273.15 K at 0 C.
+    Emissivity .6; outside 142 W/(m2 K) to 20 C. Returns the temperature and the heat fluxes at the inner and
+    outer face. Source: AFNOR/SFM, Guide de validation, 1990, TPNA01, which takes sigma = 5.73e-8 and 273.15 K
+    at 0 C.
     """
     r = np.asarray(r, dtype=float)
     ri, ro, k, h, room = 0.300, 0.391, 40.0, 142.0, 20.0

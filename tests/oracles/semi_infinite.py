@@ -29,7 +29,7 @@ def step_depth(theta: float, diffusivity: float, time: float) -> float:
 def flux_rise(
     depth: ArrayLike, time: ArrayLike, flux: float, conductivity: float, diffusivity: float
 ) -> Array:
-    """Temperature rise [K] under a constant heat flux [W/m2]. Source: Incropera et al., 6th ed. 2007, eq. 5.59."""
+    """Rise [K] under a constant heat flux [W/m2]. Source: Incropera et al., 6th ed. 2007, eq. 5.59."""
     depth, time = np.asarray(depth, dtype=float), np.asarray(time, dtype=float)
     reach = np.sqrt(diffusivity * time)
     wave = 2 * reach / np.sqrt(np.pi) * np.exp(-(depth**2) / (4 * reach**2))
@@ -53,9 +53,10 @@ def contact_temperature(first: tuple[float, float], second: tuple[float, float])
 def touched_surface(
     time: ArrayLike, skin: tuple[float, float], body: tuple[float, float], conductance: float
 ) -> Array:
-    """Face of the first half-space (effusivity, start) touched by a second through a contact conductance [W/(m2 K)].
+    """Face of a half-space touched by a second through a contact conductance [W/(m2 K)].
 
-    Source: Carslaw & Jaeger, 2nd ed. 1959, sec. 2.14 (the form with a contact resistance).
+    Each is (effusivity, start temperature). Source: Carslaw & Jaeger, 2nd ed. 1959, sec. 2.14 (the form with
+    a contact resistance).
     """
     (es, ts), (eb, tb) = skin, body
     a = conductance * (1 / es + 1 / eb)

@@ -1,7 +1,8 @@
 """A slab whose one face is in perfect contact with a well-stirred fluid of limited heat capacity.
 
-Source: J. Crank, The Mathematics of Diffusion, 2nd ed. 1975, sec. 4.3.5 (numbering from memory, not re-checked). The other
-face is insulated; `ratio` is a = fluid capacity / slab capacity [-]; Fourier number = alpha t / l^2.
+Source: J. Crank, The Mathematics of Diffusion, 2nd ed. 1975, sec. 4.3.5 (numbering from memory, not
+re-checked). The other face is insulated; `ratio` is a = fluid capacity / slab capacity [-]; Fourier number =
+alpha t / l^2.
 """
 
 from __future__ import annotations
@@ -43,9 +44,10 @@ def poured_cup_fluid(
     fluid_capacity: float,
     temperatures: tuple[float, float],
 ) -> Array:
-    """Fluid temperature [C] after `time` [s] in a plane wall of `area` [m2] that starts at another temperature.
+    """Fluid temperature [C] after `time` [s] in contact with a plane wall of `area` [m2] that starts colder.
 
-    heat_capacity [J/(m3 K)] and thickness [m] of the wall, fluid_capacity [J/K], temperatures (fluid, wall) [C].
+    heat_capacity [J/(m3 K)] and thickness [m] of the wall, fluid_capacity [J/K], temperatures (fluid, wall)
+    [C].
     """
     wall_capacity = area * thickness * heat_capacity
     fluid, wall = temperatures

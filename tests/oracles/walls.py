@@ -1,4 +1,4 @@
-"""Closed forms of special walls: between two cones, laminated, and a flat wall between a fluid and a fixed face."""
+"""Closed forms of special walls: between two cones, laminated, flat between a fluid and a fixed face."""
 
 from __future__ import annotations
 
@@ -15,8 +15,8 @@ def conical_shell_flow(
 
     angles: half-angles of the inner and outer cone [rad]; slant: distances from the apex of the two insulated
     ends [m]; drop: inner minus outer temperature [K]. Laplace's equation in spherical coordinates depends on
-    ln tan(theta/2) alone. Source: W.R. Van Sant, Conduction Heat Transfer Solutions, UCRL-52863, 1980, lists solutions
-    of this type (from memory, not re-checked); derived here.
+    ln tan(theta/2) alone. Source: W.R. Van Sant, Conduction Heat Transfer Solutions, UCRL-52863, 1980, lists
+    solutions of this type (from memory, not re-checked); derived here.
     """
     inner, outer = (np.log(np.tan(angle / 2)) for angle in angles)
     return float(2 * np.pi * conductivity * (slant[1] - slant[0]) * drop / (outer - inner))
@@ -25,7 +25,7 @@ def conical_shell_flow(
 def conical_shell_temperature(
     angle: ArrayLike, angles: tuple[float, float], faces: tuple[float, float]
 ) -> Array:
-    """Temperature at a half-angle [rad] between the cones; faces: (inner, outer) temperature. Source: as above."""
+    """Temperature at a half-angle [rad]; faces: (inner, outer) temperature. Source: `conical_shell_flow`."""
     inner, outer = (np.log(np.tan(a / 2)) for a in angles)
     share = (np.log(np.tan(np.asarray(angle, dtype=float) / 2)) - inner) / (outer - inner)
     return np.asarray(faces[0] + (faces[1] - faces[0]) * share)
@@ -34,8 +34,8 @@ def conical_shell_temperature(
 def laminate_conductivity(first: float, second: float, share_of_second: float) -> tuple[float, float]:
     """Conductivity of a layered medium across and along its layers [W/(m K)].
 
-    Source: O. Wiener, Abh. Saechs. Ges. Wiss. 32 (1912) 509 (from memory, not re-checked): series and parallel bounds,
-    both attained by layers.
+    Source: O. Wiener, Abh. Saechs. Ges. Wiss. 32 (1912) 509 (from memory, not re-checked): series and
+    parallel bounds, both attained by layers.
     """
     across = 1 / ((1 - share_of_second) / first + share_of_second / second)
     return across, (1 - share_of_second) * first + share_of_second * second
@@ -44,7 +44,7 @@ def laminate_conductivity(first: float, second: float, share_of_second: float) -
 def wall_to_fluid(
     thickness: float, conductivity: float, face: float, film: float, fluid: float
 ) -> tuple[float, float]:
-    """Heat flux [W/m2] from a fluid into a plane wall with its far face held at `face`, and the wetted face [C].
+    """Heat flux [W/m2] from a fluid into a plane wall with its far face held, and the wetted face [C].
 
     Source: AFNOR/SFM, Guide de validation, 1990, TPLL01.
     """
@@ -52,6 +52,15 @@ def wall_to_fluid(
     return flux, fluid - flux / film
 
 
+def heated_sheet(flux: float, fluid: float, film: float, beneath: tuple[float, ...]) -> float:
+    """Temperature [C] of a thin sheet that gives off `flux` [W/m2], with the same film and fluid on both sides.
+
+    `beneath`: area resistances [m2 K/W] between the sheet and the film below. Source: Incropera et al., 6th ed.
+    2007, Example 3.2.
+    """
+    return fluid + flux / (film + 1 / (sum(beneath) + 1 / film))
+
+
 def critical_radius(conductivity: float, film: float) -> float:
-    """Radius [m] of insulation on a tube at which its loss is greatest, k/h. Source: Incropera et al., 6th ed., Ex. 3.5."""
+    """Radius [m] of tube insulation of greatest loss, k/h. Source: Incropera et al., 6th ed., Ex. 3.5."""
     return conductivity / film
