@@ -1,0 +1,325 @@
+"""Walls and drink as one system of equations, and its linearisation bordered by the drink.
+
+The state is one flat vector: the temperatures of each section in turn, then the drink's mass and enthalpy.
+"""
+
+from __future__ import annotations
+
+from collections.abc import Mapping, Sequence
+from dataclasses import dataclass, field
+
+import numpy as np
+from numpy.typing import NDArray
+
+from cupfem.conduction import Conduction, slope_data
+from cupfem.drink import WALL, Ambient, Drink, Lumped
+from cupfem.linear import Factor, Operator
+
+Floats = NDArray[np.float64]
+
+PEAK_SHARE = 0.05
+"""A local error counts by a twentieth of its peak where that exceeds its mean over the wall: the level line moves over few cells."""
+BORDER_STEP = 1e-5
+"""Step, in scales of the drink's state, of the difference quotients that fill the border."""
+
+
+@dataclass(frozen=True, eq=False)
+class Section:
+    """A share of the circumference with its own wall state."""
+
+    conduction: Conduction
+    share: float = 1.0
+    name: str = "wall"
+
+
+@dataclass(eq=False)
+class System:
+    """Right-hand sides of walls and drink.
+
+    Parameters
+    ----------
+    sections:
+        Their shares add to 1.
+    ambient:
+        The room, constant between two breaks of the march.
+    """
+
+    sections: Sequence[Section]
+    drink: Drink | None = None
+    ambient: Ambient = Ambient()
+    slices: list[slice] = field(init=False)
+
+    def __post_init__(self) -> None:
+        ends = np.cumsum([0, *(section.conduction.mesh.size for section in self.sections)])
+        self.slices = [slice(int(a), int(b)) for a, b in zip(ends[:-1], ends[1:], strict=True)]
+        self._walls = int(ends[-1])
+        self.constrained = any(len(section.conduction.fixed) for section in self.sections)
+        weights = [section.conduction.capacity_weights() for section in self.sections]
+        self._error_weights = [w / w.sum() for w in weights]
+
+    # -- the state ------------------------------------------------------------------------------------------------------------
+
+    def state(self, walls: Sequence[Floats], drink: Floats | None = None) -> Floats:
+        """Flat state of given temperatures and drink."""
+        return np.concatenate([*walls, [] if drink is None else drink]).astype(float)
+
+    def wall(self, state: Floats, index: int = 0) -> Floats:
+        """Temperatures of a section [degC]."""
+        return state[self.slices[index]]
+
+    def drink_state(self, state: Floats) -> Floats:
+        """Mass [kg] and enthalpy [J] of the drink; empty without one."""
+        return state[self._walls :]
+
+    def lumped(self, state: Floats) -> Lumped:
+        """Drink and room as the walls see them."""
+        return self.drink.lumped(self.drink_state(state), self.ambient) if self.drink else Lumped(self.ambient)
+
+    def stored(self, state: Floats) -> dict[str, float]:
+        """Heat stored above 0 degC [J]: each region (all sections, by share) and the drink."""
+        heat: dict[str, float] = {}
+        for index, section in enumerate(self.sections):
+            add_terms(heat, section.conduction.stored_heat(self.wall(state, index)), section.share)
+        if self.drink is not None:
+            heat["drink"] = float(self.drink_state(state)[1])
+        return heat
+
+    def with_fixed(self, state: Floats, time: float) -> Floats:
+        """The state with the prescribed temperatures of a time written in (in place)."""
+        if self.constrained:
+            for section, part in zip(self.sections, self.slices, strict=True):
+                state[part][section.conduction.fixed] = section.conduction.fixed_values(time)
+        return state
+
+    def free(self, residual: Floats) -> Floats:
+        """A residual with the rows of prescribed temperatures cleared (in place)."""
+        if self.constrained:
+            for section, part in zip(self.sections, self.slices, strict=True):
+                residual[part][section.conduction.fixed] = 0.0
+        return residual
+
+    # -- right-hand sides -----------------------------------------------------------------------------------------------------
+
+    def loads(self, state: Floats, time: float) -> tuple[Floats, dict[str, float]]:
+        """All rates but the constant conduction: walls [W], drink [kg/s, W]; and the ledger's powers [W]."""
+        lumped = self.lumped(state)
+        powers: dict[str, float] = {}
+        out = np.empty(len(state))
+        for section, part in zip(self.sections, self.slices, strict=True):
+            conduction, wall = section.conduction, state[part]
+            load = conduction.supplied(time)
+            conduction.subtract_varying(load, wall)
+            for exchange in conduction.exchanges:
+                points = exchange.points(lumped, time)
+                if len(points.weight):
+                    fluxes = exchange.fluxes(points, points.interpolate(wall), lumped, time)
+                    exchange.add_load(load, points, fluxes)
+                    add_terms(powers, exchange.powers(points, fluxes), section.share)
+            add_terms(powers, conduction.supplied_power(time), -section.share)
+            out[part] = load
+        if self.drink is not None:
+            rates, terms = self.drink.rates(self.drink_state(state), lumped, time, powers.get(WALL, 0.0))
+            out[self._walls :] = rates
+            add_terms(powers, terms, 1.0)
+        return out, powers
+
+    def conducted(self, state: Floats) -> Floats:
+        """Constant conduction K T of the walls [W]; zero for the drink."""
+        return self._by_section([section.conduction.stiffness for section in self.sections], state, 0.0)
+
+    def capacity_times(self, state: Floats) -> Floats:
+        """M T of the walls; the drink's state itself."""
+        return self._by_section([section.conduction.mass for section in self.sections], state, 1.0)
+
+    def _by_section(self, operators: Sequence[Operator], state: Floats, drink: float) -> Floats:
+        out = np.empty(len(state))
+        for operator, part in zip(operators, self.slices, strict=True):
+            out[part] = operator @ state[part]
+        out[self._walls :] = drink * state[self._walls :]
+        return out
+
+    # -- sizes ----------------------------------------------------------------------------------------------------------------
+
+    def largest(self, change: Floats, at: Floats) -> float:
+        """Largest change of a wall temperature or of the drink [K]."""
+        wall = float(np.max(np.abs(change[: self._walls])))
+        return max(wall, self.drink_size(change, at))
+
+    def error_size(self, error: Floats, at: Floats) -> float:
+        """Size of a local error [K]: mean square over each wall's heat capacity, or a twentieth of the peak, or the drink's."""
+        size = self.drink_size(error, at)
+        for weights, part in zip(self._error_weights, self.slices, strict=True):
+            square = error[part] ** 2
+            size = max(size, float(np.sqrt(weights @ square)), PEAK_SHARE * float(np.sqrt(square.max())))
+        return size
+
+    def drink_size(self, change: Floats, at: Floats) -> float:
+        """Change of the drink in kelvins (or the mass that weighs as much)."""
+        if self.drink is None:
+            return 0.0
+        scales = self.drink.scales(self.drink_state(at))
+        return float(np.max(np.abs(self.drink_state(change)) / scales))
+
+
+class Linearised:
+    """M + w K of each section, factorised, with the drink as a border; w is the step times the scheme's diagonal.
+
+    The border couples both ways: how walls and drink answer to the drink's state (columns, by difference quotients) and how the
+    drink answers to the walls (rows, from the films' slopes). The Schur complement is a small dense matrix. Where the level moves
+    within the step the wetted part differs from stage to stage; `at_stage` gives the low-rank correction.
+    """
+
+    def __init__(self, system: System, states: tuple[Floats, Floats, Floats], times: tuple[float, float, float], weight: float):
+        self.system, self.weight = system, weight
+        lumped = tuple(system.lumped(state) for state in states)
+        state, time = states[1], times[1]
+        self.constant: list[Operator] = []
+        self._factors: list[Factor] = []
+        self._moving: list[_MovingLevel] = []
+        passed: list[Floats] = []
+        for index, section in enumerate(system.sections):
+            wall = system.wall(state, index)
+            self._add_section(section, wall, lumped[1], time, passed)
+            moving = _MovingLevel(section, (lumped[0], lumped[2]), (times[0], times[2]), self._factors[-1])
+            moving.refer_to(wall, lumped[1], time, weight)
+            self._moving.append(moving)
+        if system.drink is not None:
+            self._add_border(state, time, passed)
+
+    def _add_section(
+        self, section: Section, wall: Floats, lumped: Lumped, time: float, passed: list[Floats]
+    ) -> None:
+        conduction = section.conduction
+        constant = conduction.mass.data + self.weight * conduction.stiffness.data
+        self.constant.append(conduction.pattern.operator(constant))
+        data, heat_passed = _film_slopes(conduction, wall, lumped, time)
+        matrix = constant + self.weight * (data + conduction.varying_data(wall))
+        self._factors.append(conduction.pattern.factor(matrix, conduction.fixed))
+        passed.append(section.share * heat_passed)
+
+    def _add_border(self, state: Floats, time: float, passed: list[Floats]) -> None:
+        system = self.system
+        assert system.drink is not None
+        scales = BORDER_STEP * system.drink.scales(system.drink_state(state))
+        here, _ = system.loads(state, time)
+        columns = np.empty((len(state), len(scales)))
+        for index, scale in enumerate(scales):
+            moved = state.copy()
+            system.drink_state(moved)[index] += scale
+            columns[:, index] = system.free((system.loads(moved, time)[0] - here) * (-self.weight / scale))
+        self._small = np.eye(len(scales)) + columns[-len(scales) :]
+        receives = np.array([0.0, 1.0])
+        self._rows, self._answers = [], []
+        for factor, part, heat in zip(self._factors, system.slices, passed, strict=True):
+            answer = factor.solve(columns[part])
+            row = -self.weight * np.outer(receives, heat)
+            self._small -= row @ answer
+            self._rows.append(row)
+            self._answers.append(answer)
+
+    def constant_times(self, state: Floats) -> Floats:
+        """(M + w K) T without films and varying conductivities."""
+        return self.system._by_section(self.constant, state, 1.0)
+
+    def at_stage(self, state: Floats, time: float) -> list[Floats | None]:
+        """Corrections for the wetted part of a stage."""
+        lumped = self.system.lumped(state)
+        return [
+            moving.correction(self.system.wall(state, index), lumped, time) for index, moving in enumerate(self._moving)
+        ]
+
+    def solve(self, residual: Floats, corrections: Sequence[Floats | None] = ()) -> Floats:
+        """Newton change for a residual."""
+        system = self.system
+        out = np.empty(len(residual))
+        for index, (factor, part) in enumerate(zip(self._factors, system.slices, strict=True)):
+            out[part] = factor.solve(residual[part])
+            if corrections and corrections[index] is not None:
+                self._moving[index].correct(out[part], corrections[index])
+        if system.drink is not None:
+            rest = system.drink_state(residual).copy()
+            for row, part in zip(self._rows, system.slices, strict=True):
+                rest -= row @ out[part]
+            lumped = np.linalg.solve(self._small, rest)
+            for answer, part in zip(self._answers, system.slices, strict=True):
+                out[part] -= answer @ lumped
+            system.drink_state(out)[:] = lumped
+        return out
+
+
+class _MovingLevel:
+    """Low-rank correction where the bounds of partly wetted edges move over the step.
+
+    With E the columns of the identity at the unknowns that a bound passes, and C the change of the film matrix there,
+    (A + E C E^T)^-1 r = x - Z (I + C Z_E)^-1 C x_E with x = A^-1 r and Z = A^-1 E (Sherman-Morrison-Woodbury formula; Golub and
+    Van Loan, Matrix Computations, 4th ed. 2013, sec. 2.1.4).
+    """
+
+    def __init__(
+        self, section: Section, lumped: tuple[Lumped, Lumped], times: tuple[float, float], factor: Factor
+    ):
+        self._exchanges = []
+        unknowns = [np.zeros(0, dtype=int)]
+        for exchange in section.conduction.exchanges:
+            for low, high in exchange.moved_bounds(lumped, times):
+                dofs, span = exchange.facets_between(low, high)
+                self._exchanges.append((exchange, span))
+                unknowns.append(dofs)
+        fixed = section.conduction.fixed
+        self._unknowns = np.setdiff1d(np.concatenate(unknowns), fixed)
+        if len(self._unknowns):
+            unit = np.zeros((section.conduction.mesh.size, len(self._unknowns)))
+            unit[self._unknowns, np.arange(len(self._unknowns))] = 1.0
+            self._answers = factor.solve(unit)
+
+    def refer_to(self, wall: Floats, lumped: Lumped, time: float, weight: float) -> None:
+        """Take the film matrix at this state as the reference."""
+        self._weight = weight
+        if len(self._unknowns):
+            self._reference = self._films(wall, lumped, time)
+
+    def correction(self, wall: Floats, lumped: Lumped, time: float) -> Floats | None:
+        """C for a state."""
+        if not len(self._unknowns):
+            return None
+        return self._weight * (self._films(wall, lumped, time) - self._reference)
+
+    def correct(self, solution: Floats, correction: Floats) -> None:
+        """Apply C to a solution of the uncorrected system (in place)."""
+        here = self._answers[self._unknowns]
+        inner = np.eye(len(here)) + correction @ here
+        solution -= self._answers @ np.linalg.solve(inner, correction @ solution[self._unknowns])
+
+    def _films(self, wall: Floats, lumped: Lumped, time: float) -> Floats:
+        size = len(self._unknowns)
+        out = np.zeros((size, size))
+        for exchange, span in self._exchanges:
+            points = exchange.points_within(span, lumped, time)
+            if len(points.weight):
+                slope = exchange.slope(points, points.interpolate(wall), lumped, time)
+                place = np.minimum(np.searchsorted(self._unknowns, points.dofs), size - 1)
+                known = self._unknowns[place] == points.dofs
+                shape = points.shape * known
+                local = shape[:, :, None] * shape[:, None, :] * (points.weight * slope)[:, None, None]
+                np.add.at(out, (place[:, :, None], place[:, None, :]), local)
+        return out
+
+
+def _film_slopes(conduction: Conduction, wall: Floats, lumped: Lumped, time: float) -> tuple[Floats, Floats]:
+    """Film slopes as stored entries, and the derivative of the heat passed to the drink over the wall's unknowns."""
+    data = np.zeros(conduction.pattern.entries)
+    passed = np.zeros(conduction.mesh.size)
+    for exchange in conduction.exchanges:
+        points = exchange.points(lumped, time)
+        if len(points.weight):
+            slope = exchange.slope(points, points.interpolate(wall), lumped, time)
+            data += slope_data(conduction.pattern, points, slope)
+            if WALL in exchange.exchange.films:
+                np.add.at(passed, points.dofs, points.shape * (points.weight * slope)[:, None])
+    return data, passed
+
+
+def add_terms(total: dict[str, float], terms: Mapping[str, float], factor: float = 1.0) -> None:
+    """total += factor * terms, name by name."""
+    for name, value in terms.items():
+        total[name] = total.get(name, 0.0) + factor * value
