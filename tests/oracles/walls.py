@@ -53,10 +53,10 @@ def wall_to_fluid(
 
 
 def heated_sheet(flux: float, fluid: float, film: float, beneath: tuple[float, ...]) -> float:
-    """Temperature [C] of a thin sheet that gives off `flux` [W/m2], with the same film and fluid on both sides.
+    """Temperature [C] of a thin sheet that gives off `flux` [W/m2], same film and fluid on both sides.
 
-    `beneath`: area resistances [m2 K/W] between the sheet and the film below. Source: Incropera et al., 6th ed.
-    2007, Example 3.2.
+    `beneath`: area resistances [m2 K/W] between the sheet and the film below. Source: Incropera et al.,
+    6th ed. 2007, Example 3.2.
     """
     return fluid + flux / (film + 1 / (sum(beneath) + 1 / film))
 
