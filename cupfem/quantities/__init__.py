@@ -27,7 +27,7 @@ from cupfem.quantities.fields import (
     Volume,
     VolumeFlow,
 )
-from cupfem.quantities.text import format_quantity, parse_quantity
+from cupfem.quantities.text import format_quantity, parse_quantity, read_quantity
 
 __all__ = [
     "DIMENSIONS",
@@ -56,4 +56,5 @@ __all__ = [
     "VolumeFlow",
     "format_quantity",
     "parse_quantity",
+    "read_quantity",
 ]

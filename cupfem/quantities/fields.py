@@ -14,7 +14,7 @@ from pydantic_core import CoreSchema, PydanticCustomError, core_schema
 
 from cupfem.errors import InputError
 from cupfem.quantities.dimensions import DIMENSIONS
-from cupfem.quantities.text import in_unit, parse_quantity, shown_unit
+from cupfem.quantities.text import in_unit, read_quantity, shown_unit
 
 
 @dataclass(frozen=True)
@@ -37,17 +37,7 @@ class Quantity:
 
     def read(self, value: object) -> float:
         """Return the SI float of a text with a unit."""
-        if not isinstance(value, str):
-            raise _error("not a text with a unit", f'write it as in "{self._as_text(value)}"')
-        try:
-            return parse_quantity(value, self.dimension)
-        except InputError as error:
-            raise _error(error.why, error.instead) from None
-
-    def _as_text(self, value: object) -> str:
-        example = DIMENSIONS[self.dimension].examples[0]
-        bare = isinstance(value, int | float) and not isinstance(value, bool)
-        return f"{value} {example.partition(' ')[2]}" if bare else example
+        return _read(value, self.dimension)
 
     def write(self, value: float) -> str:
         """Return the text with unit of an SI float, exact to 1e-14 relative."""
@@ -68,17 +58,15 @@ class Share:
 
     def read(self, value: object) -> float:
         """Return the share as a float."""
-        if isinstance(value, int | float) and not isinstance(value, bool):
-            share = float(value)
-        else:
-            share = Quantity("fraction").read(value)
-        if not 0.0 <= share <= 1.0:
-            raise _error("not a share from 0 to 1", 'write 0.2 or "20 %"')
-        return share
+        return _read(value, "fraction")
 
 
-def _error(why: str, instead: str) -> PydanticCustomError:
-    return PydanticCustomError("quantity", "{why}; {instead}", {"why": why, "instead": instead})
+def _read(value: object, dimension: str) -> float:
+    try:
+        return read_quantity(value, dimension)
+    except InputError as error:
+        parts = {"why": error.why, "instead": error.instead}
+        raise PydanticCustomError("quantity", "{why}; {instead}", parts) from None
 
 
 Length = Annotated[float, Quantity("length")]

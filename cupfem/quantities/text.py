@@ -61,6 +61,23 @@ def parse_quantity(text: str, dimension: str) -> float:
     return value
 
 
+def read_quantity(value: object, dimension: str) -> float:
+    """Read a value of a file as an SI float (temperature: degC).
+
+    It must be a text with a unit; for the dimension "fraction" it may be a bare number, and lies from 0 to 1.
+    Raises InputError as `parse_quantity` does.
+    """
+    if isinstance(value, str):
+        number = parse_quantity(value, dimension)
+    elif dimension == "fraction" and isinstance(value, int | float) and not isinstance(value, bool):
+        number = float(value)
+    else:
+        raise InputError(_words(dimension), value, "not a text with a unit", _with_unit(value, dimension))
+    if dimension == "fraction" and not 0.0 <= number <= 1.0:
+        raise InputError(_words(dimension), value, "not a share from 0 to 1", 'write 0.2 or "20 %"')
+    return number
+
+
 def format_quantity(value: float, dimension: str, units: Units = "si", digits: int = 3) -> str:
     """Write an SI float (temperature: degC) in a handy unit with `digits` significant digits: "0.35 mm"."""
     unit = shown_unit(value, dimension, units)
@@ -93,7 +110,17 @@ def _known(dimension: str) -> Dimension:
 
 
 def _refused(dimension: str, text: str, why: str, instead: str) -> InputError:
-    return InputError(dimension.replace("_", " "), text, why, instead)
+    return InputError(_words(dimension), text, why, instead)
+
+
+def _with_unit(value: object, dimension: str) -> str:
+    example = _known(dimension).examples[0]
+    bare = isinstance(value, int | float) and not isinstance(value, bool)
+    return f'write it as in "{value} {example.partition(" ")[2]}"' if bare else f'write it as in "{example}"'
+
+
+def _words(dimension: str) -> str:
+    return dimension.replace("_", " ")
 
 
 def _split(text: str, dimension: str, example: str) -> tuple[str, str]:
@@ -158,7 +185,7 @@ def _pint() -> tuple[Any, Any]:
 
 
 def _unit_problem(number: str, unit: str, dimension: str, example: str) -> tuple[str, str]:
-    words = dimension.replace("_", " ")
+    words = _words(dimension)
     if not unit:
         return "no unit", f'write the unit too, as in "{number} {example.partition(" ")[2]}"'
     home = _home(unit).replace("_", " ")
