@@ -30,7 +30,7 @@ class Outline(Table):
 
     place: ClassVar[str] = "cup"
 
-    height: Annotated[Length, Positive]
+    height: Annotated[Length, Positive] = Field(examples=["95 mm"])
     """Table to brim."""
     inner_top_diameter: Annotated[Length, Positive] | None = None
     """Inside of the wall at the brim."""
@@ -97,7 +97,7 @@ class Base(Table):
     """A solid from the library or of a [material."..."] table."""
     thickness: Annotated[Length, Positive]
     """Of the disc."""
-    recess: Annotated[Length, Positive]
+    recess: Annotated[Length, Positive] = Field(examples=["8 mm"])
     """Underside of the base above the table."""
 
 
@@ -106,6 +106,12 @@ class Cup(InputFile):
 
     not_yet: ClassVar[tuple[str, ...]] = ("brim", "ridge", "flute", "strut", "insert")
     never: ClassVar[Mapping[str, str]] = {"handle": "not axisymmetric: a handle cannot be modelled"}
+
+    wanted: ClassVar[Mapping[str, str]] = {
+        "cup": "write a [cup] table with height and diameters",
+        "layer": "write at least one [[layer]]",
+        "base": 'write a [base] table, or base = "none" above the first table',
+    }
 
     title: str = "Cup"
     """What reports call the cup."""
@@ -237,7 +243,7 @@ def cup_schema() -> dict[str, Any]:
 
 
 def _mm(length: float) -> str:
-    return format_quantity(length, "length")
+    return format_quantity(length, "length", digits=4)
 
 
 def _check_names(cup: Cup) -> None:

@@ -6,7 +6,7 @@ import re
 from collections.abc import Iterable, Mapping, Sequence
 from typing import Any
 
-from pydantic import ValidationError
+from pydantic import BaseModel, ValidationError
 from pydantic_core import ErrorDetails, PydanticCustomError
 
 from cupfem.errors import InputError, nearest
@@ -37,8 +37,10 @@ def one_line(error: ValidationError, data: object, start: str = "") -> InputErro
     context = first.get("ctx", {})
     why, instead = _words(first) if "why" not in context else (context["why"], context["instead"])
     where = ".".join(part for part in (start, readable(first["loc"], data), context.get("key", "")) if part)
-    value = context["value"] if "key" in context else first["input"]
-    shown = None if first["type"] == "missing" or isinstance(value, Mapping | list | tuple) else value
+    value = context["value"] if context.get("key") else first["input"]
+    shown = (
+        None if first["type"] == "missing" or isinstance(value, Mapping | list | tuple | BaseModel) else value
+    )
     rest = f" (and {len(more)} more)" if more else ""
     return InputError(
         where or "input", shown, why + (rest if not instead else ""), instead + (rest if instead else "")

@@ -6,7 +6,7 @@ import json
 import re
 from collections.abc import Callable, Mapping
 from pathlib import Path
-from typing import Annotated, Any, ClassVar, Self, get_args
+from typing import Annotated, Any, ClassVar, Self
 
 from pydantic import AfterValidator, BaseModel, ConfigDict, Discriminator, ValidationError, model_validator
 from pydantic.fields import FieldInfo
@@ -36,6 +36,8 @@ class Table(BaseModel):
     """Keys of the file format that nothing implements yet."""
     never: ClassVar[Mapping[str, str]] = {}
     """Keys that people may try, with the reason why they cannot be."""
+    wanted: ClassVar[Mapping[str, str]] = {}
+    """What to write for a needed key that is missing, where one value does not tell."""
     left_out: ClassVar[Mapping[str, str]] = {}
     """What it means to leave out a key that has no value then."""
 
@@ -59,7 +61,7 @@ class Table(BaseModel):
                     raise cls._unknown(str(key), list(fields))
             for (key, field), name in zip(fields.items(), cls.model_fields, strict=True):
                 if field.is_required() and key not in data and name not in data:
-                    raise refused("missing", f"write {key} = {_example(field)}", key)
+                    raise refused("missing", cls.wanted.get(key, f"write {key} = {_example(field)}"), key)
         return data
 
     @classmethod
@@ -128,18 +130,7 @@ def _example(field: FieldInfo) -> str:
     for mark in field.metadata:
         if getattr(mark, "dimension", None) in DIMENSIONS:
             return f'"{DIMENSIONS[mark.dimension].examples[0]}"'
-    annotation: Any = field.annotation
-    if isinstance(annotation, type) and issubclass(annotation, Table):
-        return "{ ... }"
-    return (
-        '"..."' if annotation is str else (f'"{get_args(annotation)[0]}"' if get_args(annotation) else "...")
-    )
-
-
-def json_schema(model: type[InputFile], title: str) -> dict[str, Any]:
-    """JSON Schema of a file, for editors."""
-    schema = model.model_json_schema(by_alias=True)
-    return {"$schema": "https://json-schema.org/draft/2020-12/schema", **schema, "title": title}
+    return '"..."'
 
 
 def tag(choose: Callable[[Any], str]) -> Discriminator:

@@ -55,7 +55,7 @@ def parse(text: str, source: str) -> dict[str, Any]:
 
 
 def lines_of(text: str, data: Mapping[str, Any]) -> dict[str, int]:
-    """Line of each table and key of a TOML text, by the readable path."""
+    """Line of each table and key of a TOML text, by the readable path without quotation marks."""
     places: dict[str, int] = {}
     header: tuple[str | int, ...] = ()
     counts: dict[tuple[str, ...], int] = {}
@@ -63,6 +63,7 @@ def lines_of(text: str, data: Mapping[str, Any]) -> dict[str, int]:
         key: tuple[str, ...] = ()
         if match := _ARRAY_HEADER.match(line):
             name = _parts(match[1])
+            places.setdefault(readable(name, data), number)
             header = (*name, counts.setdefault(name, 0))
             counts[name] += 1
         elif match := _HEADER.match(line):
@@ -71,12 +72,13 @@ def lines_of(text: str, data: Mapping[str, Any]) -> dict[str, int]:
             key = _parts(match[1])
         else:
             continue
-        places.setdefault(readable((*header, *key), data), number)
+        places.setdefault(readable((*header, *key), data).replace('"', ""), number)
     return places
 
 
 def line_of(path: str, places: Mapping[str, int]) -> int | None:
     """Line of a path, or of the innermost table around it that stands in the text."""
+    path = path.replace('"', "")
     while path:
         if path in places:
             return places[path]

@@ -12,7 +12,9 @@ from cupfem.quantities import FilmCoefficient, Temperature
 
 Wetted = Literal["natural convection in the drink"]
 Wall = Literal["natural convection and radiation"]
-Surface = Literal["Shah", "Chilton-Colburn", "Bower-Saylor", "Ryan-Harleman"]
+Surface = Literal[
+    "Shah", "Chilton-Colburn", "Chilton-Colburn with Stefan flow", "Bower-Saylor", "Ryan-Harleman"
+]
 Underside = Literal["recess air and table"]
 End = Literal["insulated"]
 

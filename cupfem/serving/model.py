@@ -164,6 +164,8 @@ def _check_times(serving: Serving) -> None:
             ends[f"{path}.count"] = _last_of_count(event)
         else:
             ends |= {f"{path}.from": event.from_, f"{path}.to": event.to or 0.0}
+            if event.to is None and event.from_ == serving.duration:
+                raise refused("not before the end of the serving", "begin earlier", f"{path}.from")
     for path, end in ends.items():
         if end > serving.duration:
             why = f"after the end of the serving at {_seconds(serving.duration)}"

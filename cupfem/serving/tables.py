@@ -119,7 +119,9 @@ class Sip(Table):
 
     place: ClassVar[str] = "event"
 
-    sip: Annotated[Volume, Positive] = Field(examples=["15 ml"])
+    wanted: ClassVar[Mapping[str, str]] = {"sip": 'write sip = "15 ml", or drinking = "180 ml"'}
+
+    sip: Annotated[Volume, Positive]
     """Volume of each."""
     first: Annotated[Time, Positive] = Field(examples=["2 min"])
     """Time of the first."""
