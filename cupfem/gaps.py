@@ -9,11 +9,13 @@ from __future__ import annotations
 
 import math
 from dataclasses import dataclass, replace
+from typing import TypeAlias
 
 import numpy as np
+from numpy.typing import NDArray
+from scipy import constants
 
 from cupfem.errors import InputError
-from cupfem.films.base import GRAVITY, STEFAN_BOLTZMANN, Applied, Validity, Values, reached
 from cupfem.fluids import (
     GAS_CONSTANT_AIR,
     STANDARD_PRESSURE,
@@ -24,6 +26,10 @@ from cupfem.fluids import (
 )
 from cupfem.quantities import ZERO_CELSIUS
 
+Values: TypeAlias = float | NDArray[np.float64]
+
+STEFAN_BOLTZMANN = constants.sigma  # W/(m2 K4); CODATA, exact since the SI of 2019
+GRAVITY = constants.g  # m/s2; standard acceleration, 3rd CGPM 1901
 HEAT_CAPACITY_RATIO = 1.4  # diatomic gas
 CONTACT_CONDUCTANCE = (
     100.0  # W/(m2 K); dry board on board, 50 to 200, scoping estimate from paper on metal, see `Gap`
@@ -32,8 +38,8 @@ CONTACT_CONDUCTANCE = (
 ACCOMMODATION = 0.87
 THINNEST_GAP = 0.05e-3  # m; thinner gaps are a contact; engineering choice, no source
 STILL_GAS = 100.0  # Rayleigh number below which convection adds less than 1e-8 to conduction; not computed
-TALL_CAVITY = Validity("Rayleigh number (vertical gap)", 0.0, 2e7)
-ASPECT = Validity("height over width (vertical gap)", 5.0, 110.0)
+LARGEST_RAYLEIGH = 2e7
+ASPECTS = (5.0, 110.0)  # height over width
 
 
 def exchange_factor(inner_emissivity: float, outer_emissivity: float, radius_ratio: Values = 1.0) -> Values:
@@ -58,21 +64,13 @@ def radiation_conductance(first: Values, second: Values, factor: Values) -> Valu
     return factor * STEFAN_BOLTZMANN * ((a + b) * (a * a + b * b))
 
 
-def mean_free_path(temperature: Values, pressure: float) -> Values:
-    """Viscosity mean free path of air [m]: (mu/p) sqrt(pi R T / (2 M)).
-
-    Kennard, Kinetic Theory of Gases, 1938.
-    """
-    kelvin = temperature + ZERO_CELSIUS
-    return air_viscosity(temperature) / pressure * np.sqrt(0.5 * math.pi * GAS_CONSTANT_AIR * kelvin)
-
-
 def temperature_jump_length(
     temperature: Values, pressure: float, accommodation: float = ACCOMMODATION
 ) -> Values:
     """Distance by which a wall seems to lie farther away in a thin gas.
 
-    Formula: g = (2 - a)/a 2 gamma/(gamma + 1) lambda / Pr
+    Formula: g = (2 - a)/a 2 gamma/(gamma + 1) lambda/Pr, lambda = (mu/p) sqrt(pi R T/2); computed as
+    lambda/Pr = k/(c p) sqrt(pi R T/2)
     Parameters: temperature [degC], pressure [Pa], thermal accommodation coefficient a [-].
     Returns: jump length [m] of one wall.
     Range: slip flow; through the whole range of pressures as the interpolation of Sherman (1963).
@@ -81,8 +79,9 @@ def temperature_jump_length(
     re-checked.
     """
     ratio = 2.0 * HEAT_CAPACITY_RATIO / (HEAT_CAPACITY_RATIO + 1.0)
-    prandtl = air_viscosity(temperature) * air_specific_heat(temperature) / air_conductivity(temperature)
-    return (2.0 - accommodation) / accommodation * ratio * mean_free_path(temperature, pressure) / prandtl
+    speed = np.sqrt(0.5 * math.pi * GAS_CONSTANT_AIR * (temperature + ZERO_CELSIUS))
+    path = air_conductivity(temperature) / air_specific_heat(temperature) * speed / pressure
+    return (2.0 - accommodation) / accommodation * ratio * path
 
 
 def free_molecular_conductance(temperature: Values, pressure: float) -> Values:
@@ -132,7 +131,7 @@ def nusselt_tall_cavity(rayleigh: Values, aspect: Values) -> Values:
     (Ra/A)^0.272
     Parameters: rayleigh on the width [-], aspect A = height over width [-].
     Returns: Nusselt number [-], mean; 1 without convection.
-    Range: A 5 to 110, Ra up to 2e7 (`TALL_CAVITY`, `ASPECT`); plane, air.
+    Range: A 5 to 110, Ra up to 2e7 (`LARGEST_RAYLEIGH`, `ASPECTS`); plane, air.
     Example: A = 40: 1.30 at Ra = 1e4, 3.00 at 1e5.
     Reference: ElSherbiny, Raithby and Hollands, J. Heat Transfer 104 (1982) 96-102; from memory, not
     re-checked.
@@ -184,7 +183,7 @@ class Gap:
     at 2.3 kPa, J. Heat Transfer 114 (1992) 326, abstract); pressure of the gas [Pa]; thermal accommodation
     [-]; resistance_factor [-], below 1 when a grip presses the gap together (the mesh stays as it is);
     thinnest [m]: below it the whole gap is a contact.
-    Range: `applied`. Plane correlation for the convection; no moisture in the gap.
+    Range: `out_of_range`. Plane correlation for the convection; no moisture in the gap.
     Reference: the functions of this module.
     """
 
@@ -265,13 +264,24 @@ class Gap:
         jump = temperature_jump_length(temperature, self.pressure, self.accommodation)
         return conductivity * width / (width + 2.0 * jump)
 
-    def applied(
+    def out_of_range(
         self, inner: Values, outer: Values, inner_radius: Values, outer_radius: Values, height: Values
-    ) -> list[Applied]:
-        """What these conditions reach of the range of the convection."""
+    ) -> list[str]:
+        """One line for each range of the convection that is left; arguments as `conductance`."""
         width = outer_radius - inner_radius
-        rayleigh = gap_rayleigh(inner, outer, width, self.pressure)
-        return [reached(TALL_CAVITY, rayleigh), reached(ASPECT, height / width)]
+        rayleigh, aspect = np.broadcast_arrays(
+            gap_rayleigh(inner, outer, width, self.pressure), height / width
+        )
+        counts = nusselt_tall_cavity(rayleigh, aspect) > 1.001
+        lines = []
+        if np.any(rayleigh > LARGEST_RAYLEIGH):
+            most = float(np.max(rayleigh))
+            lines.append(f"Rayleigh number (gap) reached {most:.3g}, tested up to {LARGEST_RAYLEIGH:.3g}")
+        if np.any(counts & ((aspect < ASPECTS[0]) | (aspect > ASPECTS[1]))):
+            low, high = float(np.min(aspect[counts])), float(np.max(aspect[counts]))
+            reached = f"{low:.3g} to {high:.3g}, tested from {ASPECTS[0]:.3g} to {ASPECTS[1]:.3g}"
+            lines.append(f"height over width (gap) reached {reached}")
+        return lines
 
 
 def require_share(what: str, value: float) -> None:

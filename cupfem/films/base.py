@@ -5,19 +5,22 @@ A film answers the heat flux that leaves a surface [W/m2] from the temperatures 
 
 from __future__ import annotations
 
+import math
 from collections.abc import Callable
 from dataclasses import dataclass
 from typing import ClassVar, NamedTuple, Protocol, TypeAlias, runtime_checkable
 
 import numpy as np
 from numpy.typing import NDArray
+from scipy import constants
 
+from cupfem.errors import InputError
 from cupfem.quantities import ZERO_CELSIUS
 
 Values: TypeAlias = float | NDArray[np.float64]
 
-STEFAN_BOLTZMANN = 5.670374419e-8  # W/(m2 K4); CODATA 2018, exact since the SI of 2019
-GRAVITY = 9.80665  # m/s2; standard acceleration, 3rd CGPM 1901
+STEFAN_BOLTZMANN = constants.sigma  # W/(m2 K4); CODATA, exact since the SI of 2019
+GRAVITY = constants.g  # m/s2; standard acceleration, 3rd CGPM 1901
 SMOOTHING = 0.05  # K; see `rounded_difference`
 
 
@@ -110,6 +113,16 @@ def smooth_maximum(first: Values, second: Values, width: Values) -> Values:
     return larger
 
 
+def require_positive(what: str, value: float, unit: str) -> None:
+    if not 0.0 < value < math.inf:
+        raise InputError(what, f"{value:g} {unit}", "must be positive and finite", "use a measured length")
+
+
+def require_share(what: str, value: float) -> None:
+    if not 0.0 <= value <= 1.0:
+        raise InputError(what, value, "must be from 0 to 1", "write 0.9")
+
+
 @dataclass(frozen=True)
 class FixedFilm:
     """A film with one given coefficient: heat flux = coefficient (surface - surroundings).
@@ -120,6 +133,11 @@ class FixedFilm:
     coefficient: float
     label: str = "fixed film"
     source: str = "given by the user"
+
+    def __post_init__(self) -> None:
+        if not 0.0 <= self.coefficient < math.inf:
+            shown = f"{self.coefficient:g} W/(m2 K)"
+            raise InputError("film coefficient", shown, "must be zero or positive", 'write "10 W/(m^2 K)"')
 
     def heat_flux(self, surface: Values, surroundings: Values, height: Values, time: float) -> Values:
         return self.coefficient * (surface - surroundings)
@@ -182,6 +200,9 @@ class Radiation:
     emissivity: float
     label: ClassVar[str] = "radiation"
     source: ClassVar[str] = "Incropera et al., Fundamentals of Heat and Mass Transfer, 6th ed. 2007, Eq. 1.7"
+
+    def __post_init__(self) -> None:
+        require_share("emissivity", self.emissivity)
 
     def heat_flux(self, surface: Values, surroundings: Values, height: Values, time: float) -> Values:
         return self.emissivity * STEFAN_BOLTZMANN * fourth_power_difference(surface, surroundings)

@@ -23,7 +23,7 @@ PLATE_HOT_UP = Validity("Rayleigh number (plate, hot side up)", 1e4, 1e11)
 PLATE_HOT_DOWN = Validity("Rayleigh number (plate, hot side down)", 1e5, 1e10)
 PLATE_HOT_DOWN_RADZIEMSKA = Validity("Rayleigh number (plate, hot side down)", 1e4, 1e9)
 
-JOIN_WIDTH = 0.02  # share of the Nusselt number over which two branches are joined
+JOIN_WIDTH = 0.005  # share of the Nusselt number over which two branches are joined
 
 
 class FluidState(NamedTuple):
@@ -103,7 +103,7 @@ def leading_edge_shape(distance: Values, length: float, offset: float) -> Values
     h/h_mean = (3/4) L (x + e)^(-1/4) / [(L + e)^(3/4) - e^(3/4)]. Without e the edge value is infinite.
     Parameters: distance x from the leading edge, length L, offset e [m].
     Returns: ratio [-]; its mean from 0 to L is 1 for any e.
-    Range: laminar (`VERTICAL_PLATE_LAMINAR`). For e = L/50 the ratio is 2.15 at the edge and 0.79 at the end.
+    Range: laminar (`VERTICAL_PLATE_LAMINAR`). For e = L/50 the ratio is 2.07 at the edge and 0.78 at the end.
     Example: e = 0 gives h = (3/4) h_mean at the end, Incropera Eq. 9.21.
     Reference: Incropera Eqs. 9.19-9.21 (similarity solution of Ostrach); the offset is common practice, no
     source.
@@ -146,7 +146,7 @@ def nusselt_plate_hot_side_up(rayleigh: Values) -> Values:
     """Natural convection above a hot plate (or below a cold one), the unstable side.
 
     Formula: Nu = 0.54 Ra^(1/4) for Ra 1e4 to 1e7, 0.15 Ra^(1/3) for Ra 1e7 to 1e11; joined smoothly where
-    they cross (Ra = 4.7e6): the larger of the two, rounded over 2 %, at most 1 % high at the joint.
+    they cross (Ra = 4.7e6): the larger of the two, rounded over 0.5 %, at most 0.25 % high at the joint.
     Parameters: rayleigh [-] on L = area / perimeter.
     Returns: Nusselt number [-], mean over the plate, on the same length.
     Range: Ra 1e4 to 1e11 (`PLATE_HOT_UP`).

@@ -7,9 +7,9 @@ from dataclasses import dataclass, replace
 from typing import ClassVar, Literal
 
 from cupfem.films import correlations as nu
-from cupfem.films.base import Applied, Values, reached, rounded_difference, upward_share
+from cupfem.films.base import Applied, Values, reached, require_positive, rounded_difference, upward_share
 from cupfem.films.correlations import FluidState
-from cupfem.films.outside import Convection, require_positive
+from cupfem.films.outside import Convection
 from cupfem.fluids import Liquid
 
 SMALLEST_BUOYANCY = 1e-5  # what 0.05 K makes in water of 20 degC; rounds the coefficient at zero difference

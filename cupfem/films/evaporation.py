@@ -24,7 +24,13 @@ from cupfem.films.base import (
 )
 from cupfem.films.correlations import FluidState
 from cupfem.films.outside import air_film
-from cupfem.films.surface import LIGHTNESS_WIDTH, SurfaceClosure, SurfaceState, analogous_heat_coefficient
+from cupfem.films.surface import (
+    LIGHTNESS_WIDTH,
+    VIRTUAL_WIDTH,
+    SurfaceClosure,
+    SurfaceState,
+    analogous_heat_coefficient,
+)
 from cupfem.films.underneath import disk_length
 from cupfem.fluids import GAS_CONSTANT_AIR, GAS_CONSTANT_VAPOUR, vapour_diffusivity, water_latent_heat
 from cupfem.quantities import ZERO_CELSIUS
@@ -228,7 +234,7 @@ class RyanHarleman(SurfaceClosure):
         """Latent heat per vapour-pressure difference [W/(m2 Pa)]."""
         water = (state.water + ZERO_CELSIUS) / (1.0 - 0.378 * state.vapour_water / state.pressure)
         air = (state.air + ZERO_CELSIUS) / (1.0 - 0.378 * state.vapour_air / state.pressure)
-        rising = 0.5 * (water - air + rounded_difference(water - air))
+        rising = 0.5 * (water - air + rounded_difference(water - air, VIRTUAL_WIDTH))
         return (2.7 * np.cbrt(rising) + 3.1 * self.wind) / 100.0
 
     def vapour(self, state: SurfaceState) -> Values:

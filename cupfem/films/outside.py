@@ -10,7 +10,15 @@ import numpy as np
 
 from cupfem.errors import InputError
 from cupfem.films import correlations as nu
-from cupfem.films.base import SMOOTHING, Applied, Values, reached, rounded_difference, upward_share
+from cupfem.films.base import (
+    SMOOTHING,
+    Applied,
+    Values,
+    reached,
+    require_positive,
+    rounded_difference,
+    upward_share,
+)
 from cupfem.films.correlations import FluidState
 from cupfem.fluids import STANDARD_PRESSURE, air_conductivity, air_density, air_specific_heat, air_viscosity
 from cupfem.quantities import ZERO_CELSIUS
@@ -220,8 +228,3 @@ class MixedConvection(Convection):
 
     def applied(self, surface: Values, surroundings: Values) -> list[Applied]:
         return self.natural.applied(surface, surroundings) + self.forced.applied(surface, surroundings)
-
-
-def require_positive(what: str, value: float, unit: str) -> None:
-    if not 0.0 < value < math.inf:
-        raise InputError(what, f"{value:g} {unit}", "must be positive and finite", "use a measured length")

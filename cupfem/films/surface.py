@@ -26,7 +26,8 @@ from cupfem.fluids import (
 )
 from cupfem.quantities import ZERO_CELSIUS
 
-LIGHTNESS_WIDTH = 2e-4  # relative density difference of 0.05 K in air; rounds the coefficients at zero
+LIGHTNESS_WIDTH = 1e-3  # relative density difference of 0.3 K in air; rounds the coefficients at zero
+VIRTUAL_WIDTH = 0.3  # K, the same in virtual temperature
 FREEBOARD_FACTOR = 0.75  # see `Recessed`
 FREEBOARD_RANGE = (0.65, 0.85)
 

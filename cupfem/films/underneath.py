@@ -19,10 +19,12 @@ from cupfem.films.base import (
     Values,
     fourth_power_difference,
     reached,
+    require_positive,
+    require_share,
     upward_share,
 )
 from cupfem.films.correlations import FluidState
-from cupfem.films.outside import Convection, air_buoyancy, air_film, require_positive
+from cupfem.films.outside import Convection, air_buoyancy, air_film
 from cupfem.fluids import STANDARD_PRESSURE, air_conductivity
 from cupfem.quantities import ZERO_CELSIUS
 
@@ -108,6 +110,8 @@ class CavityAir:
 
     def __post_init__(self) -> None:
         require_positive("depth of the recess", self.depth, "m")
+        require_share("emissivity of the base", self.base_emissivity)
+        require_share("emissivity of the table", self.table_emissivity)
         if not 0.0 <= self.table_resistance < math.inf:
             shown = f"{self.table_resistance:g} m2 K/W"
             raise InputError("table resistance", shown, "must be zero or positive", 'write "0.03 m^2 K/W"')
