@@ -10,7 +10,7 @@ from CoolProp.CoolProp import PropsSI
 
 from cupfem import films
 from cupfem.errors import InputError
-from cupfem.films import FREEBOARD_RANGE, Recessed, SurfaceConvection, SurfaceState, closure
+from cupfem.films import FREEBOARD_RANGE, Recessed, SurfaceState, closure
 from cupfem.fluids import vapour_pressure, water_latent_heat, water_saturation_pressure
 
 PRESSURE = 101325.0
@@ -179,12 +179,6 @@ def test_freeboard_factor():
         0.75 * films.Shah().heat_transfer_coefficient(70.0, *ROOM), rel=1e-14
     )
     assert "no source" in recessed.source
-
-
-def test_sensible_heat_as_a_film():
-    film = SurfaceConvection(films.Shah(), ROOM[1], PRESSURE, 0.08)
-    target = films.Shah().heat_transfer_coefficient(70.0, *ROOM) * 50.0
-    assert film.heat_flux(70.0, 20.0, 0.08, 0.0) == pytest.approx(target, rel=1e-14)
 
 
 # names and ranges

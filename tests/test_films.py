@@ -42,7 +42,6 @@ FILMS = {
     "underside": films.HorizontalPlate(0.014, "down", "radziemska"),
     "recess": films.CavityAir(0.008),
     "sum": films.FilmSum((CYLINDER, films.Radiation(0.92))),
-    "surface": films.SurfaceConvection(films.Shah(), 1170.0, 101325.0, 0.08),
 }
 every_film = pytest.mark.parametrize("film", FILMS.values(), ids=FILMS.keys())
 

@@ -42,7 +42,6 @@ from cupfem.films.surface import (
     FREEBOARD_RANGE,
     Recessed,
     SurfaceClosure,
-    SurfaceConvection,
     SurfaceState,
 )
 from cupfem.films.underneath import TABLE_RESISTANCE, CavityAir, HorizontalPlate, disk_length
@@ -76,7 +75,6 @@ __all__ = [
     "RyanHarleman",
     "Shah",
     "SurfaceClosure",
-    "SurfaceConvection",
     "SurfaceState",
     "Validity",
     "Values",

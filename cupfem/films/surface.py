@@ -160,34 +160,6 @@ class Recessed(SurfaceClosure):
         return self.closure.applied(state)
 
 
-@dataclass(frozen=True)
-class SurfaceConvection:
-    """The sensible heat of a closure as a film: heat flux = its coefficient (surface - surroundings).
-
-    Parameters: closure; vapour pressure of the air and pressure [Pa]; diameter of the free surface [m];
-    water_activity of the drink [-]. Source: that of the closure.
-    """
-
-    closure: SurfaceClosure
-    vapour_pressure: float
-    pressure: float
-    diameter: float
-    water_activity: float = 1.0
-
-    @property
-    def label(self) -> str:
-        return f"surface convection, {self.closure.label}"
-
-    @property
-    def source(self) -> str:
-        return self.closure.source
-
-    def heat_flux(self, surface: Values, surroundings: Values, height: Values, time: float) -> Values:
-        air = (self.vapour_pressure, self.pressure, self.diameter, self.water_activity)
-        coefficient = self.closure.heat_transfer_coefficient(surface, surroundings, *air)
-        return coefficient * (surface - surroundings)
-
-
 def analogous_heat_coefficient(state: SurfaceState, per_pressure: Values) -> Values:
     """Sensible coefficient [W/(m2 K)] of a layer that passes `per_pressure` [kg/(m2 s Pa)] of vapour.
 
