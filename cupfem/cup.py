@@ -16,7 +16,7 @@ from typing import Annotated, Any, ClassVar, Literal, Self
 from pydantic import Field, Tag, model_validator
 
 from cupfem.errors import InputError
-from cupfem.inputs import InputFile, Name, NotNegative, Positive, Table, json_schema, refused, tag
+from cupfem.inputs import InputFile, Name, NotNegative, Positive, Table, json_schema, refused, tag, within
 from cupfem.materials import Material, get_material, material_from_table
 from cupfem.quantities import FilmCoefficient, Fraction, Length, Pressure, format_quantity
 
@@ -25,20 +25,24 @@ STEEPEST = math.radians(45.0)
 _NEAR = 1e-9  # m; heights closer than this are one height
 
 
+Size = Annotated[Length, Positive, within("5 mm", "1 m", "length")]
+Thickness = Annotated[Length, Positive, within("1 um", "50 mm", "length")]
+
+
 class Outline(Table):
     """The `[cup]` table: the inside face."""
 
     place: ClassVar[str] = "cup"
 
-    height: Annotated[Length, Positive] = Field(examples=["95 mm"])
+    height: Size = Field(examples=["95 mm"])
     """Table to brim."""
-    inner_top_diameter: Annotated[Length, Positive] | None = None
+    inner_top_diameter: Size | None = None
     """Inside of the wall at the brim."""
-    top_outside_diameter: Annotated[Length, Positive] | None = None
+    top_outside_diameter: Size | None = None
     """Outside of the wall at the brim, instead of inner_top_diameter."""
-    inner_foot_diameter: Annotated[Length, Positive] | None = None
+    inner_foot_diameter: Size | None = None
     """Inside of the wall carried down to the table."""
-    foot_outside_diameter: Annotated[Length, Positive] | None = None
+    foot_outside_diameter: Size | None = None
     """Outside of the wall carried down to the table, instead of inner_foot_diameter."""
 
     @model_validator(mode="after")
@@ -70,13 +74,13 @@ class Layer(Table):
     """A plain word, used in paths such as layer.gap.thickness."""
     material: str
     """A name from the library or of a [material."..."] table."""
-    thickness: Annotated[Length, Positive]
+    thickness: Thickness
     """Normal to the wall."""
     from_: Annotated[Length, NotNegative] | None = Field(default=None, alias="from")
     """Lower end, height on the inside face; left out: the table."""
     to: Annotated[Length, Positive] | None = None
     """Upper end, height on the inside face; left out: the brim."""
-    blend: Annotated[Length, Positive] = 3e-3
+    blend: Annotated[Length, Positive, within("0.1 mm", "100 mm", "length")] = 3e-3
     """Length over which the layers outside move in where this one stops."""
     contact: Annotated[FilmCoefficient, Positive] | None = None
     """Conductance between what is outside and what is inside where this layer stops; left out: perfect."""
@@ -95,9 +99,9 @@ class Base(Table):
 
     material: str
     """A solid from the library or of a [material."..."] table."""
-    thickness: Annotated[Length, Positive]
+    thickness: Thickness
     """Of the disc."""
-    recess: Annotated[Length, Positive] = Field(examples=["8 mm"])
+    recess: Annotated[Length, Positive, within("0.1 mm", "1 m", "length")] = Field(examples=["8 mm"])
     """Underside of the base above the table."""
 
 

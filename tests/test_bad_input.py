@@ -38,6 +38,12 @@ CUPS = [
     ("0.33 mm", "-1 mm", 'layer.inner.thickness: "-1 mm": must be more than zero'),
     ('"0.33 mm"', "0.33", "layer.inner.thickness: 0.33: "),
     ('"0.33 mm"', "0.33", 'as in "0.33 mm"'),
+    (
+        "0.33 mm",
+        "330 mm",
+        'layer.inner.thickness: "330 mm": must be from 1 um to 50 mm; check the number and',
+    ),
+    ("95 mm", "9.5e300 mm", 'cup.height: "9.5e300 mm": must be from 5 mm to 1 m'),
     ("0.33 mm", "330 g", 'layer.inner.thickness: "330 g": "g" is a unit of mass, not of length'),
     ("0.33 mm", "nan mm", 'layer.inner.thickness: "nan mm": not a number'),
     ('"0.33 mm"', "2026-01-01", "layer.inner.thickness: 2026-01-01: not a text"),
@@ -118,7 +124,7 @@ CUPS = [
         'layer.film: "air": from 20 mm to 30 mm it lies on "gap", another layer of gas',
     ),
     ("78 mm", "290 mm", "cup: the wall leans by 51"),
-    ("55 mm", "1 mm", "cup: at the foot the wall (0.63 mm) is thicker than the inside radius (0.5 mm)"),
+    ("0.33 mm", "40 mm", "cup: at the foot the wall (40.3 mm) is thicker than the inside radius (27.5 mm)"),
     # keys that nothing would use
     (
         '"0.30 mm"',
@@ -171,6 +177,7 @@ def test_cup_without_layers_or_base():
 SERVINGS = [
     ("duration = 10", "line 1: duration: 10: "),
     ('duration = "0 s"', 'duration: "0 s": must be more than zero'),
+    ('duration = "10 days"', 'duration: "10 days": must be from 1 s to 48 h'),
     ('duration = "10 m"', 'duration: "10 m": "m" is a unit of length, not of time'),
     ('titel = "x"', 'titel: unknown key; did you mean "title"?'),
     # the format knows these, but nothing reads them yet
@@ -233,6 +240,10 @@ SERVINGS = [
     (
         '[[event]]\nsip = "15 ml"\nfirst = "1 min"\ncount = 2',
         "event.1.count: would change nothing: without every",
+    ),
+    (
+        '[[event]]\nsip = "1 ml"\nfirst = "1 s"\nevery = "1 ms"',
+        'event.1.every: "1 ms": must be from 1 s to 48 h',
     ),
     ('[[event]]\nsip = "15 ml"\nfirst = "1 min"\nlast = "2 min"', "event.1.last: would change nothing"),
     (

@@ -106,9 +106,9 @@ def test_sips(event, times):
     assert serving.drunk() == pytest.approx(15e-6 * len(times))
 
 
-def test_sips_at_tenths_of_a_second_do_not_lose_the_last():
-    serving = Serving(event=[{"sip": "1 ml", "first": "0.1 s", "every": "0.1 s", "last": "0.7 s"}])
-    assert len(serving.sips()) == 7
+def test_rounding_does_not_lose_the_last_sip():
+    serving = Serving(event=[{"sip": "1 ml", "first": "0.1 s", "every": "1.1 s", "last": "3.4 s"}])
+    assert len(serving.sips()) == 4
 
 
 def test_steady_drinking_and_the_breaks():

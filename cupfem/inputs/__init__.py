@@ -8,7 +8,7 @@ writes the text, `resolved` tells which defaults a model used and writes it as a
 from cupfem.inputs.messages import refused
 from cupfem.inputs.resolved import defaults_used, resolved_toml
 from cupfem.inputs.schema import json_schema
-from cupfem.inputs.tables import InputFile, Name, NotNegative, Positive, Table, tag
+from cupfem.inputs.tables import InputFile, Name, NotNegative, Positive, Table, tag, within
 
 __all__ = [
     "InputFile",
@@ -21,4 +21,5 @@ __all__ = [
     "refused",
     "resolved_toml",
     "tag",
+    "within",
 ]

@@ -14,7 +14,7 @@ from pydantic.fields import FieldInfo
 from cupfem.errors import InputError
 from cupfem.inputs import toml
 from cupfem.inputs.messages import did_you_mean, one_line, refused
-from cupfem.quantities import DIMENSIONS
+from cupfem.quantities import DIMENSIONS, parse_quantity
 
 _NAME = re.compile(r"[A-Za-z][A-Za-z0-9_-]*")
 
@@ -136,6 +136,18 @@ def _example(field: FieldInfo) -> str:
 def tag(choose: Callable[[Any], str]) -> Discriminator:
     """Tell the kinds of a value apart before they are validated, so that only the meant one complains."""
     return Discriminator(choose)
+
+
+def within(low: str, high: str, dimension: str) -> AfterValidator:
+    """Refuse what is no cup, such as a wall of 5 m, and what the solver could not work through."""
+    lowest, highest = parse_quantity(low, dimension), parse_quantity(high, dimension)
+
+    def check(value: float) -> float:
+        if not lowest <= value <= highest:
+            raise refused(f"must be from {low} to {high}", "check the number and its unit")
+        return value
+
+    return AfterValidator(check)
 
 
 def _positive(value: float) -> float:

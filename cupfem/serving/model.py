@@ -10,7 +10,7 @@ from pydantic import Field, model_validator
 
 from cupfem import fluids
 from cupfem.errors import InputError
-from cupfem.inputs import InputFile, Positive, json_schema, refused
+from cupfem.inputs import InputFile, Positive, json_schema, refused, within
 from cupfem.quantities import Time, format_quantity
 from cupfem.serving.films import Films
 from cupfem.serving.tables import Drink, Drinking, Event, Room, Sip, Start, Target
@@ -39,7 +39,7 @@ class Serving(InputFile):
 
     title: str = "Serving"
     """What reports call the serving."""
-    duration: Annotated[Time, Positive] = 600.0
+    duration: Annotated[Time, Positive, within("1 s", "48 h", "time")] = 600.0
     """From the pour to the end."""
     drink: Drink = Field(default_factory=Drink)
     """What is poured."""

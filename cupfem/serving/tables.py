@@ -11,7 +11,7 @@ from numpy.typing import ArrayLike, NDArray
 from pydantic import Field, Tag, model_validator
 
 from cupfem import fluids
-from cupfem.inputs import NotNegative, Positive, Table, refused, tag
+from cupfem.inputs import NotNegative, Positive, Table, refused, tag, within
 from cupfem.quantities import (
     Density,
     Fraction,
@@ -125,7 +125,7 @@ class Sip(Table):
     """Volume of each."""
     first: Annotated[Time, Positive] = Field(examples=["2 min"])
     """Time of the first."""
-    every: Annotated[Time, Positive] | None = None
+    every: Annotated[Time, Positive, within("1 s", "48 h", "time")] | None = None
     """From one to the next; left out: one sip only."""
     count: Annotated[int, Field(strict=True, ge=1)] | None = None
     """How many; left out: until `last`, or the end of the serving."""
