@@ -2,7 +2,9 @@
 
 Numbers: Nusselt Nu = h L / k, Rayleigh Ra = g beta dT L^3 / (nu alpha), Grashof Gr = Ra / Pr, Prandtl Pr,
 Reynolds Re = V D / nu. All properties at the film temperature unless said. Scalars or arrays. "Incropera"
-is Incropera, DeWitt, Bergman, Lavine, Fundamentals of Heat and Mass Transfer, 6th ed., Wiley 2007.
+is Incropera, DeWitt, Bergman, Lavine, Fundamentals of Heat and Mass Transfer, 6th ed., Wiley 2007. Its
+worked examples are recomputed in the tests; the numbers of its equations and sections, and the forms where
+nothing else is said, are from memory.
 """
 
 from __future__ import annotations
