@@ -88,8 +88,8 @@ class Layer(Table):
     """Share of a gap's area where its two plies touch."""
     contact_conductance: Annotated[FilmCoefficient, Positive] = 100.0
     """Conductance where the plies of a gap touch."""
-    pressure: Annotated[Pressure, Positive] | None = None
-    """Pressure of the gas in a gap; left out: that of the room."""
+    pressure: Annotated[Pressure, NotNegative] | None = None
+    """Pressure of the gas in a gap, zero for a vacuum; left out: that of the room."""
 
 
 class Base(Table):

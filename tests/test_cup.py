@@ -128,6 +128,13 @@ def test_own_material_wins_and_the_library_is_read():
     assert Cup.from_text(resolved_toml(cup)) == cup
 
 
+def test_a_gap_may_be_evacuated():
+    text = (ROOT / "geometries" / "double_wall.toml").read_text(encoding="utf-8")
+    for written, pressure in (("0 Pa", 0.0), ("1 mbar", 100.0)):
+        cup = Cup.from_text(text.replace("contact_fraction", f'pressure = "{written}"\ncontact_fraction'))
+        assert cup.layer[1].pressure == pytest.approx(pressure)
+
+
 def test_blends_are_where_something_outside_moves_in():
     cup = double_wall()
     inner, gap, outer = cup.layer
