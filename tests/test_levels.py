@@ -95,9 +95,9 @@ def planted(tmp_path):
 
 def test_the_table_is_read(levels):
     assert levels["errors"] == 0
-    assert levels["estimates"] == 4
+    assert levels["estimates"] == 5
     assert levels["cli"] == max(levels.values())
-    assert set(levels.values()) == set(range(16))
+    assert set(levels.values()) == set(range(17))
 
 
 def test_modules_import_only_from_lower_levels(levels):
