@@ -1,8 +1,9 @@
 """The measure of the half section: 2 pi r, or unit depth in the plane variant. Nowhere else.
 
-Integrals over the section and over its edges come from here, so results are whole-cup watts and joules (per metre of depth in
-the plane variant). Element matrices are scikit-fem forms; edges are integrated exactly between two heights, because the drink's
-level cuts them anywhere.
+Integrals over the section and over its edges come from here, so results are whole-cup watts and joules (per
+metre of depth in
+the plane variant). Element matrices are scikit-fem forms; edges are integrated exactly between two heights,
+because the drink's level cuts them anywhere.
 """
 
 from __future__ import annotations
@@ -38,29 +39,29 @@ class Measure:
         return np.ones_like(radius) if self.plane else 2.0 * np.pi * radius
 
 
-@BilinearForm
 def _conduction(u: Any, v: Any, w: Any) -> Any:
     return w.weight * dot(mul(w.tensor, grad(u)), grad(v))
 
 
-@BilinearForm
 def _capacity(u: Any, v: Any, w: Any) -> Any:
     return w.weight * w.density * u * v
 
 
-@LinearForm
 def _source(v: Any, w: Any) -> Any:
     return w.weight * w.density * v
 
 
+AXISYMMETRIC = Measure()
+
+
 def conduction_matrices(mesh: SectionMesh, elements: Ints, tensor: Floats, measure: Measure) -> Floats:
     """Element matrices `[element, local, local]` of div(k grad T) for a tensor `[2, 2, element]` [W/K]."""
-    return _by_strips(_conduction, mesh, elements, measure, tensor=tensor)
+    return _by_strips(BilinearForm(_conduction), mesh, elements, measure, tensor=tensor)
 
 
 def capacity_matrices(mesh: SectionMesh, elements: Ints, heat_capacity: Floats, measure: Measure) -> Floats:
     """Element matrices `[element, local, local]` of rho c dT/dt for rho c `[element]` [J/K]."""
-    return _by_strips(_capacity, mesh, elements, measure, density=heat_capacity)
+    return _by_strips(BilinearForm(_capacity), mesh, elements, measure, density=heat_capacity)
 
 
 def _by_strips(form: Any, mesh: SectionMesh, elements: Ints, measure: Measure, **fields: Floats) -> Floats:
@@ -79,9 +80,10 @@ def source_load(mesh: SectionMesh, elements: Ints, density: Any, measure: Measur
     basis = mesh.basis(elements)
     r, z = basis.global_coordinates().value
     values = density(r, z) if callable(density) else np.full(r.shape, float(density))
-    local = _source.elemental(basis, weight=measure.weight(r), density=values)
+    local = LinearForm(_source).elemental(basis, weight=measure.weight(r), density=values)
     dofs = mesh.element_dofs[:, elements]
-    return np.bincount(dofs.T.ravel(), weights=local.data.reshape(len(dofs), -1).T.ravel(), minlength=mesh.size)
+    weights = local.data.reshape(len(dofs), -1).T.ravel()
+    return np.asarray(np.bincount(dofs.T.ravel(), weights=weights, minlength=mesh.size), dtype=float)
 
 
 def volume_moments(mesh: SectionMesh, elements: Ints, measure: Measure) -> tuple[float, Floats]:
@@ -117,7 +119,7 @@ class EdgePoints:
 
     def interpolate(self, field: Floats) -> Floats:
         """Values of a field `[dof]` at the points."""
-        return np.einsum("pl,pl->p", self.shape, field[self.dofs])
+        return np.asarray(np.einsum("pl,pl->p", self.shape, field[self.dofs]))
 
     @property
     def area(self) -> float:
@@ -128,7 +130,8 @@ class EdgePoints:
 class EdgeQuadrature:
     """Exact integration over the part of an edge between two heights.
 
-    Facets are straight, so that height and radius are linear along each; the part of a facet between two heights gets its own
+    Facets are straight, so that height and radius are linear along each; the part of a facet between two
+    heights gets its own
     Gauss points. Facets at one height (a floor) count whole where they lie at or below the upper bound.
     """
 
@@ -161,7 +164,8 @@ class EdgeQuadrature:
         return parts[0] if len(parts) == 1 else _join(parts)
 
     def facets_between(self, low: float, high: float) -> tuple[Ints, tuple[float, float]]:
-        """Unknowns of the facets that a range of heights touches, and the span of heights that they cover [m]."""
+        """Unknowns of the facets that a range of heights touches, and the span of heights that they cover
+        [m]."""
         touched = np.flatnonzero((self._low <= high) & (self._high >= low) & (self._high > self._low))
         if not len(touched):
             return np.zeros(0, dtype=int), (low, low)
@@ -186,7 +190,11 @@ class EdgeQuadrature:
 
 def _take(points: EdgePoints, chosen: NDArray[np.bool_]) -> EdgePoints:
     return EdgePoints(
-        points.dofs[chosen], points.shape[chosen], points.weight[chosen], points.height[chosen], points.radius[chosen]
+        points.dofs[chosen],
+        points.shape[chosen],
+        points.weight[chosen],
+        points.height[chosen],
+        points.radius[chosen],
     )
 
 

@@ -1,7 +1,8 @@
-"""Heat conduction in one section: mass and stiffness on a fixed pattern, gaps whose conductivity follows the field, and exchange
-of heat over named edges, wholly or between two heights.
+"""Heat conduction in one section: mass and stiffness on a fixed pattern, gaps whose conductivity follows the
+field, and exchange of heat over named edges, wholly or between two heights.
 
-rho c dT/dt = div(k grad T) + q, weak form over the half section with the measure of `axisymmetry` (any textbook, e.g. Lewis,
+rho c dT/dt = div(k grad T) + q, weak form over the half section with the measure of `axisymmetry` (any
+textbook, e.g. Lewis,
 Nithiarasu, Seetharamu, Fundamentals of the Finite Element Method for Heat and Fluid Flow, 2004, ch. 3 and 6).
 """
 
@@ -15,6 +16,7 @@ import numpy as np
 from numpy.typing import NDArray
 
 from cupfem.axisymmetry import (
+    AXISYMMETRIC,
     EdgePoints,
     EdgeQuadrature,
     Measure,
@@ -36,12 +38,14 @@ Window = Callable[[Any, float], tuple[float, float]]
 """Lower and upper height [m] of the part of an edge that counts, from the lumped state and the time."""
 
 SLOPE_STEP = 1e-3
-"""Temperature step [K] of the difference quotient that gives a film's slope; the slope only steers the iteration."""
+"""Temperature step [K] of the difference quotient that gives a film's slope; the slope only steers the
+iteration."""
 
 
 @dataclass(frozen=True)
 class Solid:
-    """Properties of a region: conductivities [W/(m K)] through and along the wall, heat capacity [J/(m3 K)]."""
+    """Properties of a region: conductivities [W/(m K)] through and along the wall, heat capacity [J/(m3
+    K)]."""
 
     through: Conductivity
     along: Conductivity
@@ -50,20 +54,27 @@ class Solid:
 
 @dataclass(frozen=True)
 class GasLayer:
-    """Properties of a gap: its conductance model and the heat capacity of the gas [J/(m3 K)]."""
+    """Properties of a gap: its conductance model, the heat capacity of the gas [J/(m3 K)] and its height
+    [m]."""
 
     gap: Gap
     heat_capacity: float
+    height: float = np.inf
 
 
 @dataclass(frozen=True, eq=False)
 class Exchange:
-    """Heat exchange on an edge: films by ledger name, all to the same surroundings, over the part that `window` gives."""
+    """Heat exchange on an edge: films by ledger name, all to the same surroundings, over the part that
+    `window` gives.
+
+    The films may depend on the lumped state (the wetted height sets the length of the drink's film).
+    """
 
     edge: str
-    films: Mapping[str, Film]
+    films: Mapping[str, Film] | Callable[[Any], Mapping[str, Film]]
     surroundings: Surroundings
     window: Window | None = None
+    to_drink: bool = False
 
 
 @dataclass(frozen=True, eq=False)
@@ -95,6 +106,9 @@ class Conditions:
     sources: Mapping[str, Any] = field(default_factory=dict)
 
 
+NOTHING = Conditions()
+
+
 class _Varying(Protocol):
     """Cells whose conductivity follows the field."""
 
@@ -106,20 +120,22 @@ class _Varying(Protocol):
 
 
 class _GapCells:
-    """Cells of a gap: through the gap the whole conductance (gas, radiation, contact), along it the gas only."""
+    """Cells of a gap: through the gap the whole conductance (gas, radiation, contact), along it the gas
+    only."""
 
     def __init__(self, mesh: SectionMesh, name: str, layer: GasLayer, measure: Measure):
         faces = mesh.gaps[name]
         self.dofs = mesh.element_dofs[:, faces.elements]
-        self._gap, self._inner, self._outer = layer.gap, faces.inner, faces.outer
+        self._layer, self._inner, self._outer = layer, faces.inner, faces.outer
         self._r_inner = mesh.points[0, faces.inner].mean(axis=0)
         self._r_outer = mesh.points[0, faces.outer].mean(axis=0)
         self._through, self._along = _unit_matrices(mesh, faces.elements, measure)
 
     def _conductivities(self, temperature: Floats) -> tuple[Floats, Floats]:
         inner, outer = temperature[self._inner].mean(axis=0), temperature[self._outer].mean(axis=0)
-        through = self._gap.through_conductivity(inner, outer, self._r_inner, self._r_outer)
-        return through, self._gap.along_conductivity(0.5 * (inner + outer))
+        gap, height = self._layer.gap, self._layer.height
+        through = gap.through_conductivity(inner, outer, self._r_inner, self._r_outer, height)
+        return np.asarray(through), np.asarray(gap.along_conductivity(0.5 * (inner + outer)))
 
     def heat(self, temperature: Floats) -> Floats:
         """K(T) T, `[element, local]`."""
@@ -151,7 +167,9 @@ class _TemperatureDependentCells:
 
     def heat(self, temperature: Floats) -> Floats:
         """K(T) T, `[element, local]`."""
-        return np.asarray(np.matmul(self.matrices(temperature), temperature[self.dofs.T][:, :, None])[:, :, 0])
+        return np.asarray(
+            np.matmul(self.matrices(temperature), temperature[self.dofs.T][:, :, None])[:, :, 0]
+        )
 
 
 class Conduction:
@@ -167,8 +185,8 @@ class Conduction:
         self,
         mesh: SectionMesh,
         properties: Mapping[str, Solid | GasLayer],
-        conditions: Conditions = Conditions(),
-        measure: Measure = Measure(),
+        conditions: Conditions = NOTHING,
+        measure: Measure = AXISYMMETRIC,
     ):
         self.mesh, self.measure, self.conditions = mesh, measure, conditions
         contacts = [np.concatenate([c.inner, c.outer]) for c in mesh.contacts]
@@ -176,12 +194,14 @@ class Conduction:
         self._assemble(properties)
         self.exchanges = [EdgeExchange(mesh, exchange, measure) for exchange in conditions.exchanges]
         self.fixed, self._fixed_parts = self._fixed_unknowns()
-        self._fluxes = [(flux, EdgeQuadrature(mesh, mesh.edge(flux.edge), measure)) for flux in conditions.fluxes]
+        self._fluxes = [
+            (flux, EdgeQuadrature(mesh, mesh.edge(flux.edge), measure)) for flux in conditions.fluxes
+        ]
         self.source = np.zeros(mesh.size)
         for region, density in conditions.sources.items():
             self.source += source_load(mesh, mesh.regions[region], density, measure)
 
-    # -- assembly -------------------------------------------------------------------------------------------------------------
+    # -- assembly --------------------------------------------------------------------------------------------
 
     def _assemble(self, properties: Mapping[str, Solid | GasLayer]) -> None:
         mesh, pattern = self.mesh, self.pattern
@@ -191,11 +211,12 @@ class Conduction:
         for name, elements in mesh.regions.items():
             given = properties[name]
             dofs = mesh.element_dofs[:, elements]
-            capacity = capacity_matrices(mesh, elements, np.full(len(elements), given.heat_capacity), self.measure)
-            mass += pattern.gather(dofs, capacity)
-            self._capacities[name] = np.bincount(
-                dofs.T.ravel(), weights=capacity.sum(axis=1).ravel(), minlength=mesh.size
+            capacity = capacity_matrices(
+                mesh, elements, np.full(len(elements), given.heat_capacity), self.measure
             )
+            mass += pattern.gather(dofs, capacity)
+            shares = np.bincount(dofs.T.ravel(), weights=capacity.sum(axis=1).ravel(), minlength=mesh.size)
+            self._capacities[name] = np.asarray(shares, dtype=float)
             if isinstance(given, GasLayer):
                 self._varying.append(_GapCells(mesh, name, given, self.measure))
             elif callable(given.through) or callable(given.along):
@@ -214,7 +235,7 @@ class Conduction:
         fixed = np.unique(np.concatenate([dofs for dofs, _ in parts])) if parts else np.zeros(0, dtype=int)
         return fixed, parts
 
-    # -- the field's own terms ------------------------------------------------------------------------------------------------
+    # -- the field's own terms -------------------------------------------------------------------------------
 
     def fixed_values(self, time: float) -> Floats:
         """Prescribed temperatures of the `fixed` unknowns; where edges meet the later condition holds."""
@@ -260,10 +281,13 @@ class Conduction:
         return terms
 
     def varying_data(self, temperature: Floats) -> Floats:
-        """Stored entries of K(T) of the varying cells; the slope of K itself is left out: the matrix stays symmetric."""
+        """Stored entries of K(T) of the varying cells; the slope of K itself is left out: the matrix stays
+        symmetric."""
         data = np.zeros(self.pattern.entries)
         for cells, (taken, entry) in zip(self._varying, self._places, strict=True):
-            data += np.bincount(entry, weights=cells.matrices(temperature).ravel()[taken], minlength=len(data))
+            data += np.bincount(
+                entry, weights=cells.matrices(temperature).ravel()[taken], minlength=len(data)
+            )
         return data
 
     def stored_heat(self, temperature: Floats) -> dict[str, float]:
@@ -315,7 +339,12 @@ class EdgeExchange:
         given = self.exchange.surroundings
         around = given(points.height, time, lumped) if callable(given) else given
         films = self.exchange.films
-        return {name: film.heat_flux(surface, around, points.height, time) for name, film in films.items()}
+        if callable(films):
+            films = films(lumped)
+        return {
+            name: np.asarray(film.heat_flux(surface, around, points.height, time))
+            for name, film in films.items()
+        }
 
     def add_load(self, out: Floats, points: EdgePoints, fluxes: Mapping[str, Floats]) -> None:
         """Subtract what leaves over the edge from a load vector."""

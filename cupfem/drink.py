@@ -1,23 +1,24 @@
 """The drink as one lumped node whose state is its mass and its enthalpy, balance term by term.
 
 dm/dt = - m_vapour - m_drunk
-dH/dt = P_wall - Q_convection - Q_radiation - m_vapour (h(T) + h_fg(T)) - m_drunk h(T),      H = m h(T), h = 0 at 0 degC
+dH/dt = P_wall - Q_convection - Q_radiation - m_vapour (h(T) + h_fg(T)) - m_drunk h(T),      H = m h(T), h =
+0 at 0 degC
 
-Enthalpy, not temperature, is the state: with a falling mass only H closes the balance. The level follows from m / rho(T) and the
-exact inside volume. Well mixed: a lumped drink is common practice for a stirred or sipped cup (Incropera et al., Fundamentals of
-Heat and Mass Transfer, 6th ed. 2007, sec. 5.1, for the lumped balance).
+Enthalpy, not temperature, is the state: with a falling mass only H closes the balance. The level follows
+from m / rho(T) and the
+exact inside volume. Well mixed: a lumped drink is common practice for a stirred or sipped cup (Incropera et
+al., Fundamentals of Heat and Mass Transfer, 6th ed. 2007, sec. 5.1, for the lumped balance).
 """
 
 from __future__ import annotations
 
 from collections.abc import Mapping
 from dataclasses import dataclass, replace
-from typing import Protocol
 
 import numpy as np
 from numpy.typing import NDArray
 
-from cupfem.films import Film
+from cupfem.films import Film, SurfaceClosure
 from cupfem.fluids import Liquid, water_latent_heat
 from cupfem.meridian import Meridian
 
@@ -26,21 +27,11 @@ Floats = NDArray[np.float64]
 MINIMUM_MASS = 1e-3
 """Below this mass [kg] (a gram, a film on the floor) the node retires: nothing is wetted any more."""
 
-WALL = "wall to drink"
-"""Ledger name of the heat that the wetted wall passes to the drink (negative: the drink warms the wall)."""
-
-
-class Evaporation(Protocol):
-    """Published closure of the vapour flux from a water surface [kg/(m2 s)]."""
-
-    def mass_flux(
-        self, water_temperature: float, air_temperature: float, vapour_pressure: float, pressure: float, diameter: float
-    ) -> float: ...
-
 
 @dataclass(frozen=True)
 class Ambient:
-    """The room's air, constant between two breaks of the march: temperature [degC], vapour pressure and pressure [Pa]."""
+    """The room's air, constant between two breaks of the march: temperature [degC], vapour pressure and
+    pressure [Pa]."""
 
     temperature: float = 22.0
     vapour_pressure: float = 0.0
@@ -57,38 +48,50 @@ class Lumped:
     level: float = -np.inf
     area: float = 0.0
     present: bool = False
+    activity: float = 1.0
 
 
 @dataclass(frozen=True, eq=False)
 class Surface:
     """What the drink's surface exchanges with the room.
 
-    `films` give the heat flux without vapour, to the room or to `surroundings` [degC] where given; `evaporation` is absent where
-    one film replaces all.
+    `films` give heat fluxes by ledger name, to the room or to `surroundings` [degC] where given. A `closure`
+    adds vapour and the convection that goes with it; it is absent where one film replaces all.
     """
 
     films: Mapping[str, Film]
     surroundings: float | None = None
-    evaporation: Evaporation | None = None
+    closure: SurfaceClosure | None = None
 
     def heat(self, drink: Lumped, time: float) -> dict[str, float]:
-        """Sensible heat leaving [W], by film."""
+        """Sensible heat leaving [W], by ledger name."""
         around = drink.ambient.temperature if self.surroundings is None else self.surroundings
-        return {
+        terms = {
             name: drink.area * float(film.heat_flux(drink.temperature, around, drink.level, time))
             for name, film in self.films.items()
         }
+        if self.closure is not None:
+            coefficient = self.closure.heat_transfer_coefficient(*_closure_arguments(drink))
+            terms["surface convection"] = drink.area * float(coefficient) * (drink.temperature - around)
+        return terms
 
     def vapour(self, drink: Lumped) -> float:
         """Mass of vapour leaving [kg/s]."""
-        if self.evaporation is None:
+        if self.closure is None:
             return 0.0
-        diameter = 2.0 * np.sqrt(drink.area / np.pi)
-        air = drink.ambient
-        flux = self.evaporation.mass_flux(
-            drink.temperature, air.temperature, air.vapour_pressure, air.pressure, diameter
-        )
-        return drink.area * float(flux)
+        return drink.area * float(self.closure.mass_flux(*_closure_arguments(drink)))
+
+
+def _closure_arguments(drink: Lumped) -> tuple[float, float, float, float, float, float]:
+    air, diameter = drink.ambient, 2.0 * np.sqrt(drink.area / np.pi)
+    return (
+        drink.temperature,
+        air.temperature,
+        air.vapour_pressure,
+        air.pressure,
+        float(diameter),
+        drink.activity,
+    )
 
 
 @dataclass(frozen=True, eq=False)
@@ -116,9 +119,19 @@ class Drink:
             return Lumped(ambient, mass, level=self.meridian.floor)
         temperature = float(self.liquid.temperature(state[1] / mass))
         level = self.meridian.level(mass / float(self.liquid.density(temperature)))
-        return Lumped(ambient, mass, temperature, level, self.meridian.surface_area(level), present=True)
+        return Lumped(
+            ambient,
+            mass,
+            temperature,
+            level,
+            self.meridian.surface_area(level),
+            True,
+            self.liquid.vapour_factor,
+        )
 
-    def rates(self, state: Floats, drink: Lumped, time: float, received: float) -> tuple[Floats, dict[str, float]]:
+    def rates(
+        self, state: Floats, drink: Lumped, time: float, received: float
+    ) -> tuple[Floats, dict[str, float]]:
         """Rates of the state, and the terms of the ledger: heat that leaves to the outside [W].
 
         `received` is what the wetted wall passes to the drink [W].
@@ -143,7 +156,8 @@ class Drink:
         return state - taken, float(taken[1])
 
     def scales(self, state: Floats) -> Floats:
-        """Changes of the state that weigh as one kelvin: a fiftieth of the mass, and the heat of one kelvin."""
+        """Changes of the state that weigh as one kelvin: a fiftieth of the mass, and the heat of one
+        kelvin."""
         mass = max(float(state[0]), self.minimum_mass)
         return np.array([mass / 50.0, mass * float(self.liquid.specific_heat(60.0))])
 

@@ -1,8 +1,9 @@
 """Symmetric matrices on a fixed pattern, and direct solvers behind one small interface.
 
-A wall numbered along its height gives a narrow band, for which LAPACK's band Cholesky (`dpbtrf`, `dpbtrs`) is the fastest direct
-solver that needs no further package. A mesh from elsewhere has no such numbering; there SuperLU with symmetric pivoting serves.
-Both sit behind `Pattern.factor`.
+A wall numbered along its height gives a narrow band, for which LAPACK's band Cholesky (`dpbtrf`, `dpbtrs`)
+is the fastest direct
+solver that needs no further package. A mesh from elsewhere has no such numbering; there SuperLU with
+symmetric pivoting serves. Both sit behind `Pattern.factor`.
 
 Only the lower triangle is stored: one set of indices serves the mass and the stiffness matrix.
 """
@@ -36,7 +37,8 @@ class Pattern:
     Parameters
     ----------
     element_dofs:
-        Numbers of the unknowns of each element, shape `[local, element]`, or a list of such arrays (elements and contacts).
+        Numbers of the unknowns of each element, shape `[local, element]`, or a list of such arrays (elements
+        and contacts).
     size:
         Number of unknowns n.
     """
@@ -75,7 +77,9 @@ class Pattern:
     def gather(self, element_dofs: Ints, matrices: Floats) -> Floats:
         """Stored entries, shape `[entries]`, of the sum of element matrices `[element, local, local]`."""
         taken, entry = self.positions(element_dofs)
-        return np.bincount(entry, weights=matrices.ravel()[taken], minlength=self.entries)
+        return np.bincount(entry, weights=matrices.ravel()[taken], minlength=self.entries).astype(
+            float, copy=False
+        )
 
     def multiply(self, data: Floats, vector: Floats) -> Floats:
         """Matrix times vector."""
@@ -134,7 +138,9 @@ class _BandFactor:
         width = pattern.half_bandwidth + 1
         band = np.zeros(pattern.size * width)
         band[pattern._band] = data
-        self._factor, info = lapack.dpbtrf(band.reshape((width, pattern.size), order="F"), lower=1, overwrite_ab=1)
+        self._factor, info = lapack.dpbtrf(
+            band.reshape((width, pattern.size), order="F"), lower=1, overwrite_ab=1
+        )
         if info != 0:
             raise ConvergenceError(f"the matrix is not positive definite at unknown {info - 1}")
 
@@ -165,5 +171,6 @@ def _lower_keys(element_dofs: Ints, size: int) -> Ints:
 
 
 def _band_pays(size: int, half_bandwidth: int) -> bool:
-    """Band Cholesky costs n b^2; past this width nested orderings with their overhead are cheaper (measured, common practice)."""
+    """Band Cholesky costs n b^2; past this width nested orderings with their overhead are cheaper (measured,
+    common practice)."""
     return half_bandwidth <= max(200, 2 * int(np.sqrt(size)))

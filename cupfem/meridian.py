@@ -1,8 +1,10 @@
 """The half section of a cup: inside profile, layers across the wall, base, and volume against level.
 
-Pure geometry, no mesh. Heights are z on the wall's inside face, above the table; thickness is measured along the wall's normal.
+Pure geometry, no mesh. Heights are z on the wall's inside face, above the table; thickness is measured along
+the wall's normal.
 
-Volumes and areas of a profile made of straight pieces are exact sums over frusta (Pappus-Guldin theorem; any handbook of
+Volumes and areas of a profile made of straight pieces are exact sums over frusta (Pappus-Guldin theorem; any
+handbook of
 geometry, e.g. Bronshtein and Semendyayev, Handbook of Mathematics, section on bodies of revolution).
 """
 
@@ -33,16 +35,19 @@ class Profile:
 
     def __post_init__(self) -> None:
         if np.any(np.diff(self.height) <= 0):
-            raise InputError("inside profile", None, "its heights must rise", "list the points from the table up")
+            raise InputError(
+                "inside profile", None, "its heights must rise", "list the points from the table up"
+            )
 
     def radius_at(self, height: ArrayLike) -> Floats:
         """Inside radius [m] at heights [m]."""
-        return np.interp(np.asarray(height, dtype=float), self.height, self.radius)
+        return np.asarray(np.interp(np.asarray(height, dtype=float), self.height, self.radius))
 
     def arc_length_at(self, height: ArrayLike) -> Floats:
         """Length along the inside face from the table [m]."""
         pieces = np.hypot(np.diff(self.height), np.diff(self.radius))
-        return np.interp(np.asarray(height, dtype=float), self.height, np.concatenate([[0.0], np.cumsum(pieces)]))
+        reached = np.concatenate([[0.0], np.cumsum(pieces)])
+        return np.asarray(np.interp(np.asarray(height, dtype=float), self.height, reached))
 
     def normal_at(self, height: ArrayLike) -> Floats:
         """Outward normals `[2, p]` (r, z); at a corner of the profile the mean of both sides."""
@@ -67,18 +72,24 @@ class Profile:
         return float(self._volumes[piece] + _frustum(z - start, radius, self.radius_at(z)))
 
     def height_of_volume(self, volume: float) -> float:
-        """Height [m] below which the inside volume [m3] is found; the inverse of `volume_below` to 1e-15 m."""
-        piece = int(np.clip(np.searchsorted(self._volumes, volume, side="right") - 1, 0, len(self.height) - 2))
+        """Height [m] below which the inside volume [m3] is found; the inverse of `volume_below` to 1e-15
+        m."""
+        piece = int(
+            np.clip(np.searchsorted(self._volumes, volume, side="right") - 1, 0, len(self.height) - 2)
+        )
         span = self.height[piece + 1] - self.height[piece]
         slope = (self.radius[piece + 1] - self.radius[piece]) / span
-        return float(self.height[piece] + _frustum_height(volume - self._volumes[piece], self.radius[piece], slope))
+        return float(
+            self.height[piece] + _frustum_height(volume - self._volumes[piece], self.radius[piece], slope)
+        )
 
 
 @dataclass(frozen=True, eq=False)
 class LayerBand:
     """One layer of the wall between two heights.
 
-    `blend` is the length over which the layers outside move in where this layer stops; zero where nothing lies outside.
+    `blend` is the length over which the layers outside move in where this layer stops; zero where nothing
+    lies outside.
     """
 
     name: str
@@ -91,7 +102,8 @@ class LayerBand:
     closing_conductance: float = np.inf
 
     def thickness_at(self, height: ArrayLike) -> Floats:
-        """Thickness [m] at heights; over a blend it falls to nothing along a smooth step (no kink at either end)."""
+        """Thickness [m] at heights; over a blend it falls to nothing along a smooth step (no kink at either
+        end)."""
         z = np.asarray(height, dtype=float)
         below = _smooth_step((z - (self.low - self.blend_low)) / max(self.blend_low, 1e-300))
         above = _smooth_step(((self.high + self.blend_high) - z) / max(self.blend_high, 1e-300))
@@ -209,18 +221,25 @@ def _band(cup: Cup, index: int, ranges: list[tuple[float, float]]) -> LayerBand:
         )
     conductance = np.inf if layer.contact is None else layer.contact
     return LayerBand(
-        layer.name, cup.material(layer.material), layer.thickness, low, high, blend_low, blend_high, conductance
+        layer.name,
+        cup.material(layer.material),
+        layer.thickness,
+        low,
+        high,
+        blend_low,
+        blend_high,
+        conductance,
     )
 
 
 def _merge(heights: Floats, tolerance: float = 1e-9) -> Floats:
     ordered = np.sort(heights)
-    return ordered[np.concatenate([[True], np.diff(ordered) > tolerance])]
+    return np.asarray(ordered[np.concatenate([[True], np.diff(ordered) > tolerance])])
 
 
 def _smooth_step(x: Floats) -> Floats:
     x = np.clip(x, 0.0, 1.0)
-    return x * x * (3.0 - 2.0 * x)
+    return np.asarray(x * x * (3.0 - 2.0 * x))
 
 
 def _frustum(height: ArrayLike, lower: ArrayLike, upper: ArrayLike) -> Floats:
@@ -229,7 +248,8 @@ def _frustum(height: ArrayLike, lower: ArrayLike, upper: ArrayLike) -> Floats:
 
 
 def _frustum_height(volume: float, radius: float, slope: float) -> float:
-    """Height of a frustum of given volume: pi/3 ((r + m x)^3 - r^3) / m = V, written so that it holds for m = 0 too."""
+    """Height of a frustum of given volume: pi/3 ((r + m x)^3 - r^3) / m = V, written so that it holds for m
+    = 0 too."""
     x = volume / (np.pi * radius * radius) if radius > 0 else 0.0
     for _ in range(60):
         upper = radius + slope * x

@@ -1,7 +1,8 @@
-"""Adaptive steps of the scheme over a system: stages by simplified Newton, embedded error control, dense output, ledger.
+"""Adaptive steps of the scheme over a system: stages by simplified Newton, embedded error control, dense
+output, ledger.
 
-Each stage solves M (Y - base) = h gamma F(Y) for walls and drink together. The ledger accumulates each power with the scheme's own
-weights, so that it closes to the iteration's tolerance whatever the step.
+Each stage solves M (Y - base) = h gamma F(Y) for walls and drink together. The ledger accumulates each power
+with the scheme's own weights, so that it closes to the iteration's tolerance whatever the step.
 """
 
 from __future__ import annotations
@@ -27,14 +28,16 @@ ITERATION_TOLERANCE = 5e-3
 SAFETY, MOST_GROWTH, LEAST_GROWTH = 0.9, 5.0, 0.2
 LAST_NODE = float(NODES.max())
 LINEARISE_AT = 0.6
-"""Where in the step the matrix is formed: the stages stand at 0.15 to 1.04 of it, and the level moves on meanwhile."""
+"""Where in the step the matrix is formed: the stages stand at 0.15 to 1.04 of it, and the level moves on
+meanwhile."""
 
 
 @dataclass(frozen=True, eq=False)
 class Step:
     """An accepted step with what dense output and the ledger need.
 
-    `energies` are the step's heats [J] by ledger name; `error` [K] is the embedded estimate, `drink_error` the drink's part.
+    `energies` are the step's heats [J] by ledger name; `error` [K] is the embedded estimate, `drink_error`
+    the drink's part.
     """
 
     start: float
@@ -111,7 +114,12 @@ class March:
             accepted = trial.step_record()
             self.counters.steps += 1
             yield accepted
-            time, state, slope, powers = accepted.end, accepted.after, accepted.slope_after, accepted.powers_after
+            time, state, slope, powers = (
+                accepted.end,
+                accepted.after,
+                accepted.slope_after,
+                accepted.powers_after,
+            )
             step *= min(MOST_GROWTH, SAFETY * max(error, 1e-4) ** -0.25)
 
     def _fit(self, step: float, left: float) -> float:
@@ -124,7 +132,8 @@ class March:
     def _check(self, time: float, step: float) -> None:
         if step < SMALLEST_STEP or self.counters.steps + self.counters.rejected > MOST_STEPS:
             raise ConvergenceError(
-                f"the march cannot go on at t = {time:.6g} s: step {step:.3g} s after {self.counters.steps} steps"
+                f"the march cannot go on at t = {time:.6g} s: "
+                f"step {step:.3g} s after {self.counters.steps} steps"
             )
 
     def _first_slope(self, state: Floats, time: float) -> tuple[Floats, dict[str, float]]:
@@ -169,7 +178,8 @@ class _Trial:
         return True
 
     def _extrapolated(self, time: float) -> Floats:
-        """The state at a time ahead by its present slope; the drink's mass is kept from falling below half."""
+        """The state at a time ahead by its present slope; the drink's mass is kept from falling below
+        half."""
         ahead = self.state + (time - self.time) * self.slopes[0]
         drink, old = self.system.drink_state(ahead), self.system.drink_state(self.state)
         if len(drink) and drink[0] < 0.5 * old[0]:
@@ -201,7 +211,8 @@ class _Trial:
         return False
 
     def _estimate(self) -> None:
-        """Embedded error, filtered through the step's own matrix so that stiff components do not dominate it."""
+        """Embedded error, filtered through the step's own matrix so that stiff components do not dominate
+        it."""
         error = (self.step * (WEIGHTS - EMBEDDED)) @ self.slopes
         filtered = self.matrix.solve(self.system.free(self.system.capacity_times(error)))
         self.drink_error = self.system.drink_size(filtered, self.state)

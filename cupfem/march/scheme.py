@@ -1,8 +1,9 @@
 """The Runge-Kutta scheme ESDIRK4(3)6L[2]SA.
 
-Kennedy and Carpenter, "Diagonally Implicit Runge-Kutta Methods for Ordinary Differential Equations. A Review",
-NASA/TM-2016-219173 (2016), sec. 7.1.1: six stages (the first explicit), order four, L-stable, stiffly accurate, embedded order three.
-The coefficients are held to their order conditions by a test.
+Kennedy and Carpenter, "Diagonally Implicit Runge-Kutta Methods for Ordinary Differential Equations. A
+Review",
+NASA/TM-2016-219173 (2016), sec. 7.1.1: six stages (the first explicit), order four, L-stable, stiffly
+accurate, embedded order three. The coefficients are held to their order conditions by a test.
 """
 
 from __future__ import annotations

@@ -7,18 +7,22 @@ from __future__ import annotations
 
 from collections.abc import Mapping, Sequence
 from dataclasses import dataclass, field
+from itertools import pairwise
 
 import numpy as np
 from numpy.typing import NDArray
 
 from cupfem.conduction import Conduction, slope_data
-from cupfem.drink import WALL, Ambient, Drink, Lumped
+from cupfem.drink import Ambient, Drink, Lumped
+from cupfem.edges import TO_DRINK
 from cupfem.linear import Factor, Operator
 
 Floats = NDArray[np.float64]
 
+ROOM = Ambient()
 PEAK_SHARE = 0.05
-"""A local error counts by a twentieth of its peak where that exceeds its mean over the wall: the level line moves over few cells."""
+"""A local error counts by a twentieth of its peak where that exceeds its mean over the wall: the level line
+moves over few cells."""
 BORDER_STEP = 1e-5
 """Step, in scales of the drink's state, of the difference quotients that fill the border."""
 
@@ -46,18 +50,18 @@ class System:
 
     sections: Sequence[Section]
     drink: Drink | None = None
-    ambient: Ambient = Ambient()
+    ambient: Ambient = ROOM
     slices: list[slice] = field(init=False)
 
     def __post_init__(self) -> None:
         ends = np.cumsum([0, *(section.conduction.mesh.size for section in self.sections)])
-        self.slices = [slice(int(a), int(b)) for a, b in zip(ends[:-1], ends[1:], strict=True)]
+        self.slices = [slice(int(a), int(b)) for a, b in pairwise(ends)]
         self._walls = int(ends[-1])
         self.constrained = any(len(section.conduction.fixed) for section in self.sections)
         weights = [section.conduction.capacity_weights() for section in self.sections]
         self._error_weights = [w / w.sum() for w in weights]
 
-    # -- the state ------------------------------------------------------------------------------------------------------------
+    # -- the state -------------------------------------------------------------------------------------------
 
     def state(self, walls: Sequence[Floats], drink: Floats | None = None) -> Floats:
         """Flat state of given temperatures and drink."""
@@ -73,7 +77,9 @@ class System:
 
     def lumped(self, state: Floats) -> Lumped:
         """Drink and room as the walls see them."""
-        return self.drink.lumped(self.drink_state(state), self.ambient) if self.drink else Lumped(self.ambient)
+        return (
+            self.drink.lumped(self.drink_state(state), self.ambient) if self.drink else Lumped(self.ambient)
+        )
 
     def stored(self, state: Floats) -> dict[str, float]:
         """Heat stored above 0 degC [J]: each region (all sections, by share) and the drink."""
@@ -98,7 +104,7 @@ class System:
                 residual[part][section.conduction.fixed] = 0.0
         return residual
 
-    # -- right-hand sides -----------------------------------------------------------------------------------------------------
+    # -- right-hand sides ------------------------------------------------------------------------------------
 
     def loads(self, state: Floats, time: float) -> tuple[Floats, dict[str, float]]:
         """All rates but the constant conduction: walls [W], drink [kg/s, W]; and the ledger's powers [W]."""
@@ -118,7 +124,7 @@ class System:
             add_terms(powers, conduction.supplied_power(time), -section.share)
             out[part] = load
         if self.drink is not None:
-            rates, terms = self.drink.rates(self.drink_state(state), lumped, time, powers.get(WALL, 0.0))
+            rates, terms = self.drink.rates(self.drink_state(state), lumped, time, powers.get(TO_DRINK, 0.0))
             out[self._walls :] = rates
             add_terms(powers, terms, 1.0)
         return out, powers
@@ -138,7 +144,7 @@ class System:
         out[self._walls :] = drink * state[self._walls :]
         return out
 
-    # -- sizes ----------------------------------------------------------------------------------------------------------------
+    # -- sizes -----------------------------------------------------------------------------------------------
 
     def largest(self, change: Floats, at: Floats) -> float:
         """Largest change of a wall temperature or of the drink [K]."""
@@ -146,7 +152,8 @@ class System:
         return max(wall, self.drink_size(change, at))
 
     def error_size(self, error: Floats, at: Floats) -> float:
-        """Size of a local error [K]: mean square over each wall's heat capacity, or a twentieth of the peak, or the drink's."""
+        """Size of a local error [K]: mean square over each wall's heat capacity, or a twentieth of the peak,
+        or the drink's."""
         size = self.drink_size(error, at)
         for weights, part in zip(self._error_weights, self.slices, strict=True):
             square = error[part] ** 2
@@ -162,14 +169,23 @@ class System:
 
 
 class Linearised:
-    """M + w K of each section, factorised, with the drink as a border; w is the step times the scheme's diagonal.
+    """M + w K of each section, factorised, with the drink as a border; w is the step times the scheme's
+    diagonal.
 
-    The border couples both ways: how walls and drink answer to the drink's state (columns, by difference quotients) and how the
-    drink answers to the walls (rows, from the films' slopes). The Schur complement is a small dense matrix. Where the level moves
+    The border couples both ways: how walls and drink answer to the drink's state (columns, by difference
+    quotients) and how the
+    drink answers to the walls (rows, from the films' slopes). The Schur complement is a small dense matrix.
+    Where the level moves
     within the step the wetted part differs from stage to stage; `at_stage` gives the low-rank correction.
     """
 
-    def __init__(self, system: System, states: tuple[Floats, Floats, Floats], times: tuple[float, float, float], weight: float):
+    def __init__(
+        self,
+        system: System,
+        states: tuple[Floats, Floats, Floats],
+        times: tuple[float, float, float],
+        weight: float,
+    ):
         self.system, self.weight = system, weight
         lumped = tuple(system.lumped(state) for state in states)
         state, time = states[1], times[1]
@@ -225,7 +241,8 @@ class Linearised:
         """Corrections for the wetted part of a stage."""
         lumped = self.system.lumped(state)
         return [
-            moving.correction(self.system.wall(state, index), lumped, time) for index, moving in enumerate(self._moving)
+            moving.correction(self.system.wall(state, index), lumped, time)
+            for index, moving in enumerate(self._moving)
         ]
 
     def solve(self, residual: Floats, corrections: Sequence[Floats | None] = ()) -> Floats:
@@ -234,8 +251,9 @@ class Linearised:
         out = np.empty(len(residual))
         for index, (factor, part) in enumerate(zip(self._factors, system.slices, strict=True)):
             out[part] = factor.solve(residual[part])
-            if corrections and corrections[index] is not None:
-                self._moving[index].correct(out[part], corrections[index])
+            correction = corrections[index] if corrections else None
+            if correction is not None:
+                self._moving[index].correct(out[part], correction)
         if system.drink is not None:
             rest = system.drink_state(residual).copy()
             for row, part in zip(self._rows, system.slices, strict=True):
@@ -250,9 +268,10 @@ class Linearised:
 class _MovingLevel:
     """Low-rank correction where the bounds of partly wetted edges move over the step.
 
-    With E the columns of the identity at the unknowns that a bound passes, and C the change of the film matrix there,
-    (A + E C E^T)^-1 r = x - Z (I + C Z_E)^-1 C x_E with x = A^-1 r and Z = A^-1 E (Sherman-Morrison-Woodbury formula; Golub and
-    Van Loan, Matrix Computations, 4th ed. 2013, sec. 2.1.4).
+    With E the columns of the identity at the unknowns that a bound passes, and C the change of the film
+    matrix there,
+    (A + E C E^T)^-1 r = x - Z (I + C Z_E)^-1 C x_E with x = A^-1 r and Z = A^-1 E (Sherman-Morrison-Woodbury
+    formula; Golub and Van Loan, Matrix Computations, 4th ed. 2013, sec. 2.1.4).
     """
 
     def __init__(
@@ -306,7 +325,8 @@ class _MovingLevel:
 
 
 def _film_slopes(conduction: Conduction, wall: Floats, lumped: Lumped, time: float) -> tuple[Floats, Floats]:
-    """Film slopes as stored entries, and the derivative of the heat passed to the drink over the wall's unknowns."""
+    """Film slopes as stored entries, and the derivative of the heat passed to the drink over the wall's
+    unknowns."""
     data = np.zeros(conduction.pattern.entries)
     passed = np.zeros(conduction.mesh.size)
     for exchange in conduction.exchanges:
@@ -314,7 +334,7 @@ def _film_slopes(conduction: Conduction, wall: Floats, lumped: Lumped, time: flo
         if len(points.weight):
             slope = exchange.slope(points, points.interpolate(wall), lumped, time)
             data += slope_data(conduction.pattern, points, slope)
-            if WALL in exchange.exchange.films:
+            if exchange.exchange.to_drink:
                 np.add.at(passed, points.dofs, points.shape * (points.weight * slope)[:, None])
     return data, passed
 

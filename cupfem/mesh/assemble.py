@@ -1,0 +1,319 @@
+"""Wall and base -> scikit-fem mesh: vertices, cells, names and numbering."""
+
+from __future__ import annotations
+
+import numpy as np
+from numpy.typing import NDArray
+from skfem import Basis, ElementQuad1, ElementQuad2, MeshQuad
+
+from cupfem.errors import InputError
+from cupfem.meridian import LayerBand
+from cupfem.mesh.section import Contact, GapFaces, SectionMesh
+from cupfem.mesh.wall import STATION_SPACING, Wall
+
+Floats = NDArray[np.float64]
+Ints = NDArray[np.int_]
+
+
+class Assembler:
+    """Vertices, cells, names and numbering of wall and base."""
+
+    def __init__(self, wall: Wall, fineness: float, order: int):
+        self.wall = wall
+        self.order = order
+        self.fineness = fineness
+        self.base = wall.meridian.base
+        self._number_vertices()
+        self._make_wall_cells()
+        self._make_base_cells()
+
+    # -- vertices --------------------------------------------------------------------------------------------
+
+    def _number_vertices(self) -> None:
+        wall = self.wall
+        code = np.arange(len(wall.z))[:, None] * wall.lines + wall.line
+        codes, inverse = np.unique(code, return_inverse=True)
+        self.vertex = inverse.reshape(code.shape)
+        station, line = codes // wall.lines, codes % wall.lines
+        self.vertices = wall.points()[:, station, line]
+        self.keys = np.array([2.0 * station, 2.0 * line])
+        arc = wall.meridian.profile.arc_length_at(wall.z)
+        self.wall_coordinates = np.array([arc[station], wall.offsets[station, line]])
+        self.nodes_across = int(np.max([len(np.unique(row)) for row in wall.line]) - 1) * self.order + 1
+
+    # -- cells of the wall -----------------------------------------------------------------------------------
+
+    def _make_wall_cells(self) -> None:
+        self.cells: list[Ints] = []
+        self.names: list[str] = []
+        self.counts: list[int] = []
+        self.gap_lines: dict[str, tuple[Ints, Ints]] = {}
+        for index, layer in enumerate(self.wall.meridian.layers):
+            self._layer_cells(index, layer)
+
+    def _layer_cells(self, index: int, layer: LayerBand) -> None:
+        start, stop = int(self.wall.first_line[index]), int(self.wall.first_line[index + 1])
+        middle = 0.5 * (self.wall.z[:-1] + self.wall.z[1:])
+        body = (middle > layer.low) & (middle < layer.high)
+        if layer.material.kind == "gas":
+            parts = {layer.name: self.wall.present[index]}
+        else:
+            parts = {
+                layer.name: self.wall.present[index] & body,
+                f"{layer.name} pocket": self.wall.present[index] & ~body,
+            }
+        for name, where in parts.items():
+            intervals = np.flatnonzero(where)
+            if len(intervals):
+                self._add_wall_cells(name, intervals, start, stop)
+
+    def _add_wall_cells(self, name: str, intervals: Ints, start: int, stop: int) -> None:
+        i, a = (grid.ravel() for grid in np.meshgrid(intervals, np.arange(start, stop), indexing="ij"))
+        v = self.vertex
+        self.cells.append(np.array([v[i, a], v[i, a + 1], v[i + 1, a + 1], v[i + 1, a]]))
+        self.names.append(name)
+        self.counts.append(len(i))
+        self.gap_lines[name] = (
+            np.array([v[i, start], v[i + 1, start]]),
+            np.array([v[i, stop], v[i + 1, stop]]),
+        )
+
+    # -- cells of the base -----------------------------------------------------------------------------------
+
+    def _make_base_cells(self) -> None:
+        self.joint: tuple[int, int] | None = None
+        self.base_first_cell = sum(self.counts)
+        if self.base is None:
+            return
+        z = self.wall.z
+        low, high = int(np.argmin(abs(z - self.base.recess))), int(np.argmin(abs(z - self.base.top)))
+        self.joint = (low, high)
+        joint = self.vertex[low : high + 1, 0]
+        columns = self._base_columns(float(self.vertices[0, joint].min()))
+        grid = self._base_vertices(joint, columns)
+        d, j = (g.ravel() for g in np.meshgrid(np.arange(len(columns)), np.arange(high - low), indexing="ij"))
+        self.cells.append(np.array([grid[d + 1, j], grid[d, j], grid[d, j + 1], grid[d + 1, j + 1]]))
+        self.names.append("base")
+        self.counts.append(len(d))
+        self.base_grid, self.base_cell_column = grid, d
+
+    def _base_columns(self, radius: float) -> Floats:
+        """Fractions of the inside radius from the joint to the axis: fine at the wall, coarser inwards."""
+        spacing, positions = STATION_SPACING / self.fineness, [0.0]
+        while positions[-1] < radius:
+            positions.append(positions[-1] + spacing)
+            spacing = min(spacing * 1.3, 4.0 * STATION_SPACING / self.fineness)
+        return 1.0 - np.array(positions[1:]) / positions[-1]
+
+    def _base_vertices(self, joint: Ints, columns: Floats) -> Ints:
+        """`[column, row]` vertex numbers, column 0 the joint; the axis last."""
+        first = self.vertices.shape[1]
+        rows = len(joint)
+        new = np.arange(first, first + len(columns) * rows).reshape(len(columns), rows)
+        edge = self.vertices[:, joint]
+        points = np.array([columns[:, None] * edge[0], np.broadcast_to(edge[1], (len(columns), rows))])
+        self.vertices = np.concatenate([self.vertices, points.reshape(2, -1)], axis=1)
+        step = 2 * np.arange(1, len(columns) + 1)
+        keys = np.array(
+            [
+                np.broadcast_to(self._base_key(step)[:, None], new.shape),
+                np.broadcast_to(2.0 * np.arange(rows), new.shape),
+            ]
+        )
+        self.keys = np.concatenate([self.keys, keys.reshape(2, -1)], axis=1)
+        nothing = np.full((2, new.size), np.nan)
+        self.wall_coordinates = np.concatenate([self.wall_coordinates, nothing], axis=1)
+        return np.concatenate([joint[None, :], new])
+
+    def _base_key(self, step: Ints) -> Floats:
+        """Place in the numbering of the base's half-columns, `step` counted from the joint.
+
+        Two of them go between two columns of the wall, starting at the middle of the joint, so that neither
+        arm waits for the other.
+        """
+        assert self.joint is not None
+        middle = float(self.joint[0] + self.joint[1])
+        pair = (step + 1) // 2
+        return np.asarray(middle - 0.5 - 2.0 * (pair - 1) - 0.1 * (step % 2 == 0))
+
+    # -- the mesh --------------------------------------------------------------------------------------------
+
+    def mesh(self) -> SectionMesh:
+        cells = np.concatenate(self.cells, axis=1)
+        grid = MeshQuad(self.vertices, cells, sort_t=False, validate=False)
+        rank, element_dofs, points, coordinates = self._number_unknowns(grid)
+        facet_of = _FacetIndex(grid, rank, self.order, self._facet_dofs)
+        regions = self._regions()
+        return SectionMesh(
+            grid=grid,
+            order=self.order,
+            element_dofs=element_dofs,
+            points=points,
+            regions=regions,
+            edges={name: facet_of(pairs) for name, pairs in self._edges(grid, facet_of).items()},
+            along=self._along(cells),
+            wall_coordinates=coordinates,
+            nodes_across=self.nodes_across,
+            gaps=self._gaps(regions, facet_of),
+            contacts=self._contacts(facet_of),
+            pockets=tuple(name for name in regions if name.endswith(" pocket")),
+        )
+
+    def _number_unknowns(self, grid: MeshQuad) -> tuple[Ints, Ints, Floats, Floats]:
+        element = ElementQuad2() if self.order == 2 else ElementQuad1()
+        basis = Basis(grid, element, intorder=2)
+        keys = self._unknown_keys(grid, basis)
+        sequence = np.lexsort((keys[1], keys[0]))
+        rank = np.empty_like(sequence)
+        rank[sequence] = np.arange(len(sequence))
+        self._facet_dofs = basis.facet_dofs
+        coordinates = self._spread(grid, basis, self.wall_coordinates)[:, sequence]
+        return rank, rank[basis.element_dofs], basis.doflocs[:, sequence], coordinates
+
+    def _spread(self, grid: MeshQuad, basis: Basis, at_vertices: Floats) -> Floats:
+        """Values at all unknowns from values at vertices: means over the facet or the cell."""
+        values = np.empty((len(at_vertices), basis.N))
+        values[:, basis.nodal_dofs[0]] = at_vertices
+        if self.order == 2:
+            values[:, basis.facet_dofs[0]] = at_vertices[:, grid.facets].mean(axis=1)
+            values[:, basis.interior_dofs[0]] = at_vertices[:, grid.t].mean(axis=1)
+        return values
+
+    def _unknown_keys(self, grid: MeshQuad, basis: Basis) -> Floats:
+        keys = self._spread(grid, basis, self.keys)
+        if self.joint is not None and self.order == 2:
+            cells = np.arange(self.base_first_cell, grid.t.shape[1])
+            between = self._base_key(2 * self.base_cell_column + 1)
+            keys[0, basis.interior_dofs[0, cells]] = between
+            for local in (0, 2):
+                keys[0, basis.facet_dofs[0, grid.t2f[local, cells]]] = between
+        return keys
+
+    def _regions(self) -> dict[str, Ints]:
+        ends = np.cumsum(self.counts)
+        return {
+            name: np.arange(end - count, end)
+            for name, end, count in zip(self.names, ends, self.counts, strict=True)
+        }
+
+    def _along(self, cells: Ints) -> Floats:
+        """Unit vectors along the wall (along the radius in the base), from the middles of opposite sides."""
+        corner = self.vertices[:, cells]
+        upward = 0.5 * (corner[:, 3] + corner[:, 2] - corner[:, 0] - corner[:, 1])
+        outward = 0.5 * (corner[:, 1] + corner[:, 2] - corner[:, 0] - corner[:, 3])
+        vector = np.where(np.arange(cells.shape[1]) < self.base_first_cell, upward, outward)
+        return np.asarray(vector / np.linalg.norm(vector, axis=0))
+
+    def _edges(self, grid: MeshQuad, facet_of: _FacetIndex) -> dict[str, Ints]:
+        """Pairs of vertices of each named edge."""
+        v, last = self.vertex, len(self.wall.z) - 1
+        face = np.array([v[:-1, 0], v[1:, 0]])
+        edges = {"inside": face}
+        if self.joint is not None:
+            low, high = self.joint
+            edges["inside"] = face[:, high:]
+            edges["skirt"] = face[:, :low]
+            edges["floor"] = np.array([self.base_grid[:-1, -1], self.base_grid[1:, -1]])[::-1, ::-1]
+            edges["underside"] = np.array([self.base_grid[:-1, 0], self.base_grid[1:, 0]])[::-1, ::-1]
+        edges["heel"] = _distinct(np.array([v[0, :-1], v[0, 1:]]))
+        edges["brim"] = _distinct(np.array([v[last, :-1], v[last, 1:]]))
+        taken = facet_of.indices(np.concatenate([*edges.values(), self._slits()], axis=1))
+        rest = np.setdiff1d(grid.boundary_facets(), taken)
+        outside = grid.facets[:, rest]
+        outside = outside[:, (self.vertices[0, outside] > 1e-12).any(axis=0)]
+        edges["outside"] = self._upward(outside)
+        for name in ("inside", "outside"):
+            edges |= self._by_layer(name, edges[name], grid, facet_of)
+        return edges
+
+    def _by_layer(self, name: str, pairs: Ints, grid: MeshQuad, facet_of: _FacetIndex) -> dict[str, Ints]:
+        """The parts of an edge that belong to each layer, as `edge.layer`."""
+        owner = grid.f2t[0, facet_of.indices(pairs)]
+        return {
+            f"{name}.{region}": pairs[:, np.isin(owner, elements)]
+            for region, elements in self._regions().items()
+            if np.isin(owner, elements).any()
+        }
+
+    def _upward(self, pairs: Ints) -> Ints:
+        order = np.argsort(self.keys[0, pairs], axis=0, kind="stable")
+        pairs = np.take_along_axis(pairs, order, axis=0)
+        return np.asarray(
+            pairs[:, np.lexsort((self.keys[1, pairs].sum(axis=0), self.keys[0, pairs].sum(axis=0)))]
+        )
+
+    def _slits(self) -> Ints:
+        """Facets around the tip of a layer that tapers to nothing: the last cell is left out, its sides
+        carry no heat."""
+        pairs = [np.zeros((2, 0), dtype=int)]
+        v = self.vertex
+        for index in range(len(self.wall.fractions) - 1):
+            start, stop = int(self.wall.first_line[index]), int(self.wall.first_line[index + 1])
+            present = self.wall.present[index].astype(int)
+            outside = np.asarray(self.wall.present[index + 1 :].any(axis=0))
+            for i in np.flatnonzero(np.diff(present)):
+                station, empty = i + 1, (i if present[i] == 0 else i + 1)
+                if outside[empty]:
+                    column = v[station, start : stop + 1]
+                    pairs.append(np.array([column[:-1], column[1:]]))
+                    pairs.append(
+                        np.array(
+                            [[v[empty, start], v[empty, stop]], [v[empty + 1, start], v[empty + 1, stop]]]
+                        )
+                    )
+        return np.concatenate(pairs, axis=1)
+
+    def _gaps(self, regions: dict[str, Ints], facet_of: _FacetIndex) -> dict[str, GapFaces]:
+        gases = {layer.name for layer in self.wall.meridian.layers if layer.material.kind == "gas"}
+        wanted = [name for name in regions if name in gases or name.endswith(" pocket")]
+        return {
+            name: GapFaces(regions[name], *(facet_of(pairs) for pairs in self.gap_lines[name]))
+            for name in wanted
+        }
+
+    def _contacts(self, facet_of: _FacetIndex) -> tuple[Contact, ...]:
+        contacts = []
+        v = self.vertex
+        for index, layer in enumerate(self.wall.meridian.layers[:-1]):
+            if not np.isfinite(layer.closing_conductance):
+                continue
+            start, stop = int(self.wall.first_line[index]), int(self.wall.first_line[index + 1])
+            apart = self.wall.keeps_apart(index)
+            i = np.flatnonzero(apart[:-1] & apart[1:])
+            inner, outer = (np.array([v[i, line], v[i + 1, line]]) for line in (start, stop))
+            contacts.append(Contact(facet_of(inner), facet_of(outer), layer.closing_conductance))
+        return tuple(contacts)
+
+
+class _FacetIndex:
+    """Facets by their two vertices."""
+
+    def __init__(self, grid: MeshQuad, rank: Ints, order: int, facet_dofs: Ints):
+        self._count = grid.p.shape[1]
+        ends = np.sort(grid.facets, axis=0).astype(np.int64)
+        codes = ends[0] * self._count + ends[1]
+        self._order = np.argsort(codes)
+        self._codes = codes[self._order]
+        self._rank, self._facet_dofs, self._degree = rank, facet_dofs, order
+
+    def indices(self, pairs: Ints) -> Ints:
+        ends = np.sort(pairs, axis=0).astype(np.int64)
+        codes = ends[0] * self._count + ends[1]
+        place = np.searchsorted(self._codes, codes)
+        if np.any(self._codes[np.minimum(place, len(self._codes) - 1)] != codes):
+            raise InputError(
+                "mesh", None, "an edge of the drawing is no edge of the mesh", "report this cup file"
+            )
+        return np.asarray(self._order[place])
+
+    def __call__(self, pairs: Ints) -> Ints:
+        """Unknowns `[3, facet]` (start, end, middle), `[2, facet]` for linear elements. Vertices come first
+        in the numbering."""
+        ends = self._rank[pairs]
+        if self._degree == 1:
+            return np.asarray(ends)
+        return np.concatenate([ends, self._rank[self._facet_dofs[0, self.indices(pairs)]][None, :]])
+
+
+def _distinct(pairs: Ints) -> Ints:
+    return pairs[:, pairs[0] != pairs[1]]

@@ -1,0 +1,157 @@
+"""Stations and lines of the wall's grid: where they stand, and which lines stand at which station."""
+
+from __future__ import annotations
+
+from collections.abc import Mapping
+from itertools import pairwise
+
+import numpy as np
+from numpy.typing import NDArray
+
+from cupfem.meridian import MINIMUM_THICKNESS, LayerBand, Meridian
+
+Floats = NDArray[np.float64]
+Ints = NDArray[np.int_]
+
+STATION_SPACING = 1.25e-3
+"""Length of a cell along the wall at fineness 1 [m]; the fin length of a board wall is about 2 mm."""
+BLEND_CELLS = 6
+BASE_CELLS = 2
+LEAST_CELLS_ACROSS = 6
+"""Cells across the thinnest wall at fineness 1: below this, base and wall together would widen the band past
+3 x nodes across."""
+THIN_COATING = 60e-6
+"""A layer thinner than this [m] carries no transient worth resolving: one quadratic cell at fineness 1."""
+
+
+def default_stations(meridian: Meridian, fineness: float = 1.0) -> Floats:
+    """Heights [m] of the columns: each end of a layer, blend or base is one; in between at most the target
+    spacing."""
+    fixed = [meridian.breaks()]
+    cells = max(3, round(BLEND_CELLS * fineness))
+    graded = 1.0 - (1.0 - np.arange(cells + 1) / cells) ** 2
+    for layer in meridian.layers:
+        if layer.blend_high:
+            fixed.append(layer.high + layer.blend_high * graded)
+        if layer.blend_low:
+            fixed.append(layer.low - layer.blend_low * graded)
+    heights = np.sort(np.concatenate(fixed))
+    heights = heights[np.concatenate([[True], np.diff(heights) > 1e-7])]
+    return _subdivide(meridian, heights, fineness)
+
+
+def default_fractions(meridian: Meridian, fineness: float = 1.0) -> dict[str, Floats]:
+    """Lines across each layer: at least two cells (one in a coating), more in the layers that take longest
+    to warm."""
+    counts = {layer.name: 1 if layer.thickness < THIN_COATING else 2 for layer in meridian.layers}
+    while sum(counts.values()) < LEAST_CELLS_ACROSS:
+        slowest = max(meridian.layers, key=lambda layer: _warming_time(layer) / counts[layer.name] ** 2)
+        counts[slowest.name] += 1
+    return {
+        name: np.linspace(0.0, 1.0, max(1, round(count * fineness)) + 1) for name, count in counts.items()
+    }
+
+
+def _warming_time(layer: LayerBand) -> float:
+    material = layer.material
+    if material.kind == "gas":
+        return 0.0
+    diffusivity = material.conductivity_through.value / (
+        material.density.value * material.specific_heat.value
+    )
+    return layer.thickness**2 / diffusivity
+
+
+def _subdivide(meridian: Meridian, heights: Floats, fineness: float) -> Floats:
+    spacing = STATION_SPACING / fineness
+    pieces = [heights[:1]]
+    for low, high in pairwise(heights):
+        count = int(np.ceil((high - low) / spacing - 1e-9))
+        if meridian.base and low >= meridian.base.recess - 1e-9 and high <= meridian.base.top + 1e-9:
+            count = base_cells(fineness)
+        pieces.append(np.linspace(low, high, max(1, count) + 1)[1:])
+    return np.concatenate(pieces)
+
+
+def base_cells(fineness: float) -> int:
+    """Cells through the base."""
+    return max(1, round(BASE_CELLS * fineness))
+
+
+class Wall:
+    """Stations and lines of the wall: which lines stand at which station, and where."""
+
+    def __init__(
+        self, meridian: Meridian, fineness: float, stations: Floats | None, fractions: Mapping[str, Floats]
+    ):
+        self.meridian = meridian
+        self.z = (
+            default_stations(meridian, fineness) if stations is None else np.asarray(stations, dtype=float)
+        )
+        default = default_fractions(meridian, fineness)
+        self.fractions = [np.asarray(fractions.get(la.name, default[la.name])) for la in meridian.layers]
+        self.first_line = np.concatenate([[0], np.cumsum([len(f) - 1 for f in self.fractions])])
+        at_stations = np.array([layer.thickness_at(self.z) for layer in meridian.layers])
+        self.thickness = np.where(at_stations > MINIMUM_THICKNESS, at_stations, 0.0)
+        self.present = np.minimum(self.thickness[:, :-1], self.thickness[:, 1:]) > 0.0
+        self.standing = np.zeros(self.thickness.shape, dtype=bool)
+        self.standing[:, :-1] |= self.present
+        self.standing[:, 1:] |= self.present
+        self.offsets = self._offsets()
+        self.line = self._lines()
+
+    @property
+    def lines(self) -> int:
+        return int(self.first_line[-1]) + 1
+
+    def _offsets(self) -> Floats:
+        """Distance of each line from the inside face along the normal, `[station, line]`."""
+        offsets = np.zeros((len(self.z), self.lines))
+        arc = self.meridian.profile.arc_length_at(self.z)
+        for index, fractions in enumerate(self.fractions):
+            start = self.first_line[index]
+            inner = offsets[:, start]
+            # A layer that runs at an angle to the wall keeps its own thickness: the column cuts it obliquely.
+            oblique = np.sqrt(1.0 + self._inner_slope(index, arc) ** 2)
+            thickness = self.thickness[index] * oblique * self.standing[index]
+            offsets[:, start : start + len(fractions)] = inner[:, None] + thickness[:, None] * fractions
+        return offsets
+
+    def _inner_slope(self, index: int, arc: Floats) -> Floats:
+        """Slope of a layer's inner face against the inside face: only where the layers within are
+        blending."""
+        slope = np.zeros(len(arc))
+        for layer in self.meridian.layers[:index]:
+            if layer.blend_low or layer.blend_high:
+                step = 1e-4 * max(layer.blend_low, layer.blend_high)
+                rise = layer.thickness_at(self.z + step) - layer.thickness_at(self.z - step)
+                run = self.meridian.profile.arc_length_at(
+                    self.z + step
+                ) - self.meridian.profile.arc_length_at(self.z - step)
+                slope += rise / np.maximum(run, step)
+        return slope
+
+    def _lines(self) -> Ints:
+        """For each station and line, the line that stands for it (`[station, line]`): absent layers
+        collapse."""
+        line = np.broadcast_to(np.arange(self.lines), (len(self.z), self.lines)).copy()
+        for index in range(len(self.fractions)):
+            start, stop = self.first_line[index], self.first_line[index + 1]
+            absent = ~self.standing[index]
+            line[absent, start + 1 : stop] = line[absent, start][:, None]
+            line[absent, stop] = np.where(self.keeps_apart(index)[absent], stop, line[absent, start])
+        return line
+
+    def keeps_apart(self, index: int) -> NDArray[np.bool_]:
+        """Stations where the layers outside an absent layer touch what is inside through a contact of their
+        own."""
+        apart = np.zeros(len(self.z), dtype=bool)
+        if np.isfinite(self.meridian.layers[index].closing_conductance):
+            apart |= self.standing[index + 1 :].any(axis=0) & ~self.standing[index]
+        return apart
+
+    def points(self) -> Floats:
+        """`[2, station, line]`."""
+        normal = self.meridian.profile.normal_at(self.z)
+        inner = np.array([self.meridian.profile.radius_at(self.z), self.z])
+        return np.asarray(inner[:, :, None] + normal[:, :, None] * self.offsets)

@@ -1,0 +1,134 @@
+"""Pour a serving into a cup and march it to its end."""
+
+from __future__ import annotations
+
+from collections.abc import Callable, Mapping
+
+import numpy as np
+from numpy.typing import NDArray
+
+from cupfem.cup import Cup
+from cupfem.films import Film
+from cupfem.inputs import defaults_used
+from cupfem.march import March
+from cupfem.pour.record import Recorder, series_times, snapshot_times
+from cupfem.problem import Problem, build
+from cupfem.run import Run, faces_of
+from cupfem.serving import Serving
+
+Floats = NDArray[np.float64]
+
+TOLERANCE = 5e-3
+"""Local error of a time step [K]; the largest error of the tube job's tabulated temperatures is then about
+0.01 K."""
+COMPANION = 0.5
+"""Fineness of the companion run that estimates the space error, relative to the run's."""
+COMPANION_GAIN = 3.0
+"""Factor by which the error falls from the companion to the run at the least (second order; the elements'
+own is higher)."""
+TEMPERATURES = ("drink_end_degC", "outer_max_degC", "outer_end_max_degC")
+
+
+def pour(
+    cup: Cup,
+    serving: Serving | None = None,
+    *,
+    fineness: float = 1.0,
+    tolerance: float = TOLERANCE,
+    films: Mapping[str, Film] | None = None,
+    companion: bool = True,
+    progress: Callable[[float], None] | None = None,
+) -> Run:
+    """Run a serving.
+
+    Parameters
+    ----------
+    fineness:
+        Cells per length relative to the default.
+    tolerance:
+        Local error of a time step [K].
+    films:
+        Edge ("wetted", "dry", "outside", "underside", "heel", "brim") -> a film that replaces the serving's,
+        for instance `FluxFunction(f)`; it sees the drink on "wetted", elsewhere the room.
+    companion:
+        Run a coarser companion too, from which the space error is told.
+    progress:
+        Called with the time [s] after each step.
+
+    Raises
+    ------
+    InputError
+        If cup and serving do not go together.
+    ConvergenceError
+        If the march cannot go on.
+    """
+    serving = serving or Serving()
+    problem = build(cup, serving, fineness, films)
+    run = _march(problem, fineness, tolerance, progress)
+    if not companion:
+        return run
+    coarse = _march(build(cup, serving, fineness * COMPANION, films), fineness * COMPANION, tolerance, None)
+    return run.with_space_errors(_space_errors(run, coarse))
+
+
+def _march(
+    problem: Problem, fineness: float, tolerance: float, progress: Callable[[float], None] | None
+) -> Run:
+    serving, system = problem.serving, problem.system
+    faces = faces_of(problem.mesh, problem.meridian)
+    times = series_times(serving.duration, serving.breaks())
+    recorder = Recorder(system, faces, times, snapshot_times(serving.duration))
+    march = March(system, tolerance)
+    state = problem.start
+    before = system.stored(state)
+    ends = [*serving.breaks(), serving.duration]
+    time = 0.0
+    for end in ends:
+        problem.enter(time)
+        recorder.start(system, state, time)
+        for step in march.run(state, time, end):
+            recorder.add(system, step)
+            state = step.after
+            if progress is not None:
+                progress(step.end)
+        state = _sip(problem, state, end, recorder)
+        time = end
+    return Run(
+        cup=problem.cup,
+        serving=serving,
+        fineness=fineness,
+        tolerance=tolerance,
+        meridian=problem.meridian,
+        mesh=problem.mesh,
+        faces=faces,
+        series=recorder.series(),
+        snapshot_times=snapshot_times(serving.duration),
+        snapshots=recorder.snapshots,
+        ledger=recorder.ledger(before, system.stored(state)),
+        counters=vars(march.counters),
+        time_error=recorder.time_error,
+        defaults=(*defaults_used(problem.cup), *defaults_used(serving)),
+        final_state=state,
+    )
+
+
+def _sip(problem: Problem, state: Floats, time: float, recorder: Recorder) -> Floats:
+    """The state after all single sips of a moment."""
+    system = problem.system
+    for moment, volume in problem.serving.sips():
+        if abs(moment - time) < 1e-9 and system.drink is not None:
+            state = state.copy()
+            left, heat = system.drink.sip(system.drink_state(state), volume)
+            system.drink_state(state)[:] = left
+            recorder.add_heat({"sips": heat})
+    return state
+
+
+def _space_errors(run: Run, coarse: Run) -> dict[str, float]:
+    fine, other = run.figures(), coarse.figures()
+    errors = {}
+    for name in TEMPERATURES:
+        a, b = fine[name], other[name]
+        if a is not None and b is not None:
+            errors[name] = abs(a - b) / COMPANION_GAIN
+    return errors

@@ -1,0 +1,19 @@
+"""The immutable result of a run; its headline figures; load and save."""
+
+from cupfem.run.headline import CAUTION, COMFORT, FREE_WALL, MOISTURE
+from cupfem.run.result import Faces, Ledger, Run, Series, faces_of
+from cupfem.run.store import load_run, save_run
+
+__all__ = [
+    "CAUTION",
+    "COMFORT",
+    "FREE_WALL",
+    "MOISTURE",
+    "Faces",
+    "Ledger",
+    "Run",
+    "Series",
+    "faces_of",
+    "load_run",
+    "save_run",
+]
