@@ -70,7 +70,7 @@ def _by_strips(form: Any, mesh: SectionMesh, elements: Ints, measure: Measure, *
         strip = elements[start : start + STRIP]
         basis = mesh.basis(strip)
         given = {name: value[..., start : start + STRIP, None] for name, value in fields.items()}
-        weight = measure.weight(basis.global_coordinates().value[0])
+        weight = measure.weight(np.asarray(basis.global_coordinates())[0])
         out.append(form.elemental(basis, weight=weight, **given).tolocal())
     return np.concatenate(out) if out else np.zeros((0, len(mesh.element_dofs), len(mesh.element_dofs)))
 
@@ -78,7 +78,7 @@ def _by_strips(form: Any, mesh: SectionMesh, elements: Ints, measure: Measure, *
 def source_load(mesh: SectionMesh, elements: Ints, density: Any, measure: Measure) -> Floats:
     """Load `[dof]` [W] of a volumetric source [W/m3]: a number or a function of r and z."""
     basis = mesh.basis(elements)
-    r, z = basis.global_coordinates().value
+    r, z = np.asarray(basis.global_coordinates())
     values = density(r, z) if callable(density) else np.full(r.shape, float(density))
     local = LinearForm(_source).elemental(basis, weight=measure.weight(r), density=values)
     dofs = mesh.element_dofs[:, elements]
@@ -89,7 +89,7 @@ def source_load(mesh: SectionMesh, elements: Ints, density: Any, measure: Measur
 def volume_moments(mesh: SectionMesh, elements: Ints, measure: Measure) -> tuple[float, Floats]:
     """Volume [m3] and centroid (r, z) [m] of a region, weighted by the measure."""
     basis = mesh.basis(elements)
-    r, z = basis.global_coordinates().value
+    r, z = np.asarray(basis.global_coordinates())
     weights = basis.dx * measure.weight(r)
     volume = float(weights.sum())
     return volume, np.array([float((weights * r).sum()), float((weights * z).sum())]) / volume
