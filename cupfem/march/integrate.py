@@ -22,9 +22,15 @@ Floats = NDArray[np.float64]
 FIRST_STEP = 1e-3
 SMALLEST_STEP = 1e-9
 MOST_STEPS = 50000
-MOST_ITERATIONS = 10
+MOST_ITERATIONS = 12
 ITERATION_TOLERANCE = 5e-3
 """Newton changes below this share of the time tolerance end the iteration."""
+SLOW = 0.4
+"""An iteration whose changes fall by less than this factor has its matrix formed anew, once a stage."""
+EARLY = 3
+"""The first changes of a stage tell nothing of the rate yet."""
+STEEP = 0.05
+"""Change of an iterate [K] that moves the film slopes at the level line enough to take them anew."""
 SAFETY, MOST_GROWTH, LEAST_GROWTH = 0.9, 5.0, 0.2
 LAST_NODE = float(NODES.max())
 LINEARISE_AT = 0.6
@@ -168,14 +174,20 @@ class _Trial:
 
     def attempt(self) -> bool:
         """Solve the stages; False if an iteration does not converge."""
-        self.march.counters.factorisations += 1
-        times = (self.time, self.time + LINEARISE_AT * self.step, self.time + LAST_NODE * self.step)
-        middle, last = (self._extrapolated(time) for time in times[1:])
-        self.matrix = Linearised(self.system, (self.state, middle, last), times, self.weight)
+        self._linearise(LINEARISE_AT)
         if not all(self._solve_stage(stage) for stage in range(1, 6)):
             return False
         self._estimate()
         return True
+
+    def _linearise(self, share: float, state: Floats | None = None) -> None:
+        """Form the matrix a share of the step ahead, at a given state or the extrapolated one."""
+        self.march.counters.factorisations += 1
+        times = (self.time, self.time + share * self.step, self.time + LAST_NODE * self.step)
+        here = self._extrapolated(times[1]) if state is None else state
+        self.matrix = Linearised(
+            self.system, (self.state, here, self._extrapolated(times[2])), times, self.weight
+        )
 
     def _extrapolated(self, time: float) -> Floats:
         """The state at a time ahead by its present slope; the drink's mass is kept from falling below
@@ -193,22 +205,30 @@ class _Trial:
         value = system.with_fixed(base + self.weight * self.slopes[stage - 1], time)
         held = system.capacity_times(base)
         corrections = self.matrix.at_stage(value, time)
-        previous = np.inf
-        for _ in range(MOST_ITERATIONS):
+        previous, renewed = np.inf, False
+        for iteration in range(MOST_ITERATIONS):
             residual = self.matrix.constant_times(value) - held - self.weight * system.loads(value, time)[0]
             change = self.matrix.solve(system.free(residual), corrections)
             value = value - change
             self.march.counters.iterations += 1
             size = system.largest(change, self.state)
-            if not np.isfinite(size) or size > 2.0 * previous:
+            if not np.isfinite(size):
                 return False
             if size < tolerance:
-                self.slopes[stage] = (value - base) / self.weight
-                self.powers.append(system.loads(value, time)[1])
-                self.last = value
+                self._keep(stage, value, base, time)
                 return True
+            if iteration >= EARLY and size > SLOW * previous and not renewed:
+                self._linearise(NODES[stage], value)
+                renewed, size = True, np.inf
+            if size > STEEP:
+                corrections = self.matrix.at_stage(value, time)
             previous = size
         return False
+
+    def _keep(self, stage: int, value: Floats, base: Floats, time: float) -> None:
+        self.slopes[stage] = (value - base) / self.weight
+        self.powers.append(self.system.loads(value, time)[1])
+        self.last = value
 
     def _estimate(self) -> None:
         """Embedded error, filtered through the step's own matrix so that stiff components do not dominate
