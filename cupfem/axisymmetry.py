@@ -1,9 +1,8 @@
 """The measure of the half section: 2 pi r, or unit depth in the plane variant. Nowhere else.
 
 Integrals over the section and over its edges come from here, so results are whole-cup watts and joules (per
-metre of depth in
-the plane variant). Element matrices are scikit-fem forms; edges are integrated exactly between two heights,
-because the drink's level cuts them anywhere.
+metre of depth in the plane variant). Element matrices are scikit-fem forms; edges are integrated exactly
+between two heights, because the drink's level cuts them anywhere.
 """
 
 from __future__ import annotations
@@ -131,20 +130,24 @@ class EdgeQuadrature:
     """Exact integration over the part of an edge between two heights.
 
     Facets are straight, so that height and radius are linear along each; the part of a facet between two
-    heights gets its own
-    Gauss points. Facets at one height (a floor) count whole where they lie at or below the upper bound.
+    heights gets its own Gauss points. Facets at one height (a floor) count whole where they lie at or above
+    the lower bound and below the upper one.
     """
 
     def __init__(self, mesh: SectionMesh, dofs: Ints, measure: Measure):
-        self._dofs = dofs
-        self._start = mesh.points[:, dofs[0]]
-        self._end = mesh.points[:, dofs[1]]
+        start, end = mesh.points[:, dofs[0]], mesh.points[:, dofs[1]]
+        order = np.argsort(0.5 * (start[1] + end[1]), kind="stable")
+        self._dofs, self._start, self._end = dofs[:, order], start[:, order], end[:, order]
         self._measure = measure
         self._quadratic = len(dofs) == 3
         self._length = np.hypot(*(self._end - self._start))
         self._low = np.minimum(self._start[1], self._end[1])
         self._high = np.maximum(self._start[1], self._end[1])
-        self._whole = self._points(np.arange(dofs.shape[1]), np.zeros(dofs.shape[1]), np.ones(dofs.shape[1]))
+        self._level = self._low == self._high
+        every = np.arange(len(self._low))
+        self._whole = self._points(every, np.zeros(len(every)), np.ones(len(every)))
+        # Facets in rising order without overlap: the whole ones between two heights are then one slice.
+        self._rising = bool(np.all(self._high[:-1] <= self._low[1:]) and not self._level.any())
 
     def whole(self) -> EdgePoints:
         """The whole edge."""
@@ -152,43 +155,62 @@ class EdgeQuadrature:
 
     def between(self, low: float = -np.inf, high: float = np.inf) -> EdgePoints:
         """The part of the edge with low <= z < high [m]."""
-        inside = (self._low >= low) & (self._high <= high)
-        inside &= ~((self._high == self._low) & (self._high == high))
-        if inside.all():
-            return self._whole
-        cut = np.flatnonzero(~inside & (self._low < high) & (self._high > low) & (self._high > self._low))
+        if self._rising:
+            return self._slice(low, high)
+        inside = (self._low >= low) & (self._high <= high) & ~(self._level & (self._high == high))
+        cut = np.flatnonzero(~inside & (self._low < high) & (self._high > low) & ~self._level)
         whole = np.repeat(inside, len(_GAUSS_POINTS))
-        parts = [_take(self._whole, whole)]
-        if len(cut):
-            parts.append(self._cut(cut, low, high))
-        return parts[0] if len(parts) == 1 else _join(parts)
+        return self._with_cuts(_part(self._whole, whole), cut, low, high)
+
+    def _slice(self, low: float, high: float) -> EdgePoints:
+        first = int(np.searchsorted(self._low, low))
+        last = int(np.searchsorted(self._high, high, side="right"))
+        touched = [
+            place
+            for place in {first - 1, last}
+            if 0 <= place < len(self._low) and self._low[place] < high and self._high[place] > low
+        ]
+        count = len(_GAUSS_POINTS)
+        whole = _part(self._whole, slice(count * first, count * max(first, last)))
+        return self._with_cuts(whole, np.array(sorted(touched), dtype=int), low, high)
+
+    def _with_cuts(self, whole: EdgePoints, cut: Ints, low: float, high: float) -> EdgePoints:
+        if not len(cut):
+            return whole
+        start, rise = self._start[1, cut], self._end[1, cut] - self._start[1, cut]
+        ends = np.array([(low - start) / rise, (high - start) / rise])
+        ends = np.minimum(np.maximum(np.sort(ends, axis=0), 0.0), 1.0)
+        return _join(whole, self._points(cut, ends[0], ends[1]))
 
     def facets_between(self, low: float, high: float) -> tuple[Ints, tuple[float, float]]:
-        """Unknowns of the facets that a range of heights touches, and the span of heights that they cover
-        [m]."""
-        touched = np.flatnonzero((self._low <= high) & (self._high >= low) & (self._high > self._low))
+        """Unknowns of the facets that a range of heights touches, and the span of heights that they
+        cover [m]."""
+        touched = np.flatnonzero((self._low <= high) & (self._high >= low) & ~self._level)
         if not len(touched):
             return np.zeros(0, dtype=int), (low, low)
         span = float(self._low[touched].min()), float(self._high[touched].max())
         return np.unique(self._dofs[:, touched]), span
 
-    def _cut(self, facets: Ints, low: float, high: float) -> EdgePoints:
-        start, rise = self._start[1, facets], self._end[1, facets] - self._start[1, facets]
-        ends = np.sort(np.array([(low - start) / rise, (high - start) / rise]), axis=0)
-        ends = np.clip(ends, 0.0, 1.0)
-        return self._points(facets, ends[0], ends[1])
-
     def _points(self, facets: Ints, first: Floats, last: Floats) -> EdgePoints:
-        x = (first[:, None] + (last - first)[:, None] * _GAUSS_POINTS).ravel()
-        fraction = ((last - first)[:, None] * _GAUSS_WEIGHTS).ravel()
+        share = last - first
+        x = (first[:, None] + share[:, None] * _GAUSS_POINTS).ravel()
+        fraction = (share[:, None] * _GAUSS_WEIGHTS).ravel()
         facet = np.repeat(facets, len(_GAUSS_POINTS))
-        place = self._start[:, facet] + x * (self._end - self._start)[:, facet]
-        shape = [(1 - x) * (1 - 2 * x), x * (2 * x - 1), 4 * x * (1 - x)] if self._quadratic else [1 - x, x]
-        weight = fraction * self._length[facet] * self._measure.weight(place[0])
-        return EdgePoints(self._dofs[:, facet].T, np.array(shape).T, weight, place[1], place[0])
+        start = self._start[:, facet]
+        radius, height = start + x * (self._end[:, facet] - start)
+        shape = np.empty((len(x), len(self._dofs)))
+        rest = 1.0 - x
+        if self._quadratic:
+            shape[:, 0] = rest * (1.0 - 2.0 * x)
+            shape[:, 1] = x * (2.0 * x - 1.0)
+            shape[:, 2] = 4.0 * x * rest
+        else:
+            shape[:, 0], shape[:, 1] = rest, x
+        weight = fraction * self._length[facet] * self._measure.weight(radius)
+        return EdgePoints(self._dofs[:, facet].T, shape, weight, height, radius)
 
 
-def _take(points: EdgePoints, chosen: NDArray[np.bool_]) -> EdgePoints:
+def _part(points: EdgePoints, chosen: slice | NDArray[np.bool_]) -> EdgePoints:
     return EdgePoints(
         points.dofs[chosen],
         points.shape[chosen],
@@ -198,6 +220,11 @@ def _take(points: EdgePoints, chosen: NDArray[np.bool_]) -> EdgePoints:
     )
 
 
-def _join(parts: list[EdgePoints]) -> EdgePoints:
-    names = ("dofs", "shape", "weight", "height", "radius")
-    return EdgePoints(*(np.concatenate([getattr(part, name) for part in parts]) for name in names))
+def _join(one: EdgePoints, other: EdgePoints) -> EdgePoints:
+    return EdgePoints(
+        np.concatenate([one.dofs, other.dofs]),
+        np.concatenate([one.shape, other.shape]),
+        np.concatenate([one.weight, other.weight]),
+        np.concatenate([one.height, other.height]),
+        np.concatenate([one.radius, other.radius]),
+    )

@@ -37,6 +37,8 @@ Surroundings = float | Callable[[Floats, float, Any], Any]
 Window = Callable[[Any, float], tuple[float, float]]
 """Lower and upper height [m] of the part of an edge that counts, from the lumped state and the time."""
 
+SAME_HEIGHT = 1e-11
+"""Bounds nearer than this [m] to the last ones use the same integration points."""
 SLOPE_STEP = 1e-3
 """Temperature step [K] of the difference quotient that gives a film's slope; the slope only steers the
 iteration."""
@@ -192,7 +194,7 @@ class Conduction:
         contacts = [np.concatenate([c.inner, c.outer]) for c in mesh.contacts]
         self.pattern = Pattern([mesh.element_dofs, *contacts], mesh.size)
         self._assemble(properties)
-        self.exchanges = [EdgeExchange(mesh, exchange, measure) for exchange in conditions.exchanges]
+        self.exchanges = [EdgeExchange(mesh, each, measure, self.pattern) for each in conditions.exchanges]
         self.fixed, self._fixed_parts = self._fixed_unknowns()
         self._fluxes = [
             (flux, EdgeQuadrature(mesh, mesh.edge(flux.edge), measure)) for flux in conditions.fluxes
@@ -302,19 +304,20 @@ class Conduction:
 class EdgeExchange:
     """An `Exchange` on a mesh: loads, powers and slopes on the part of the edge that counts now."""
 
-    def __init__(self, mesh: SectionMesh, exchange: Exchange, measure: Measure):
+    def __init__(self, mesh: SectionMesh, exchange: Exchange, measure: Measure, pattern: Pattern):
         self.exchange = exchange
+        self._pattern = pattern
         self._quadrature = EdgeQuadrature(mesh, mesh.edge(exchange.edge), measure)
-        self._window: tuple[float, float] | None = None
         self._points = self._quadrature.whole()
+        self._low, self._high = np.nan, np.nan
 
     def points(self, lumped: Any, time: float) -> EdgePoints:
         """Integration points of the part that counts now."""
         if self.exchange.window is not None:
-            window = self.exchange.window(lumped, time)
-            if window != self._window:
-                self._points = self._quadrature.between(*window)
-                self._window = window
+            low, high = self.exchange.window(lumped, time)
+            if not (_same(low, self._low) and _same(high, self._high)):
+                self._points = self._quadrature.between(low, high)
+                self._low, self._high = low, high
         return self._points
 
     def points_within(self, span: tuple[float, float], lumped: Any, time: float) -> EdgePoints:
@@ -354,11 +357,21 @@ class EdgeExchange:
         """Heat leaving over the edge [W], by film."""
         return {name: float(points.weight @ flux) for name, flux in fluxes.items()}
 
+    def add_slope(self, data: Floats, points: EdgePoints, slope: Floats) -> None:
+        """Add the edge matrix of film slopes, times the weights of the points [W/K], to stored entries."""
+        matrices = points.shape[:, :, None] * points.shape[:, None, :] * slope[:, None, None]
+        taken, entry = self._pattern.positions(points.dofs.T)
+        np.add.at(data, entry, matrices.ravel()[taken])
+
     def slope(self, points: EdgePoints, surface: Floats, lumped: Any, time: float) -> Floats:
         """Slope of the whole heat flux over surface temperature [W/(m2 K)], at least zero."""
         above = _total(self.fluxes(points, surface + SLOPE_STEP, lumped, time))
         below = _total(self.fluxes(points, surface - SLOPE_STEP, lumped, time))
         return np.maximum((above - below) / (2.0 * SLOPE_STEP), 0.0)
+
+
+def _same(one: float, other: float) -> bool:
+    return one == other or abs(one - other) <= SAME_HEIGHT
 
 
 def _add(out: Floats, points: EdgePoints, values: Floats) -> None:
@@ -367,12 +380,6 @@ def _add(out: Floats, points: EdgePoints, values: Floats) -> None:
 
 def _total(fluxes: Mapping[str, Floats]) -> Floats:
     return np.asarray(sum(fluxes.values()))
-
-
-def slope_data(pattern: Pattern, points: EdgePoints, slope: Floats) -> Floats:
-    """Stored entries of the edge matrix with a given film slope at the points."""
-    matrices = (points.shape[:, :, None] * points.shape[:, None, :]) * (points.weight * slope)[:, None, None]
-    return pattern.gather(points.dofs.T, matrices)
 
 
 def _tensor(along: Floats, k_through: float, k_along: float) -> Floats:
@@ -403,7 +410,8 @@ def _value(conductivity: Conductivity, temperature: Floats) -> Floats:
 def _contact_matrices(mesh: SectionMesh, contact: Contact, measure: Measure) -> tuple[Ints, Floats]:
     points = EdgeQuadrature(mesh, contact.inner, measure).whole()
     jump = np.concatenate([points.shape, -points.shape], axis=1)
-    matrices = (jump[:, :, None] * jump[:, None, :]) * (points.weight * contact.conductance)[:, None, None]
     facets = contact.inner.shape[1]
+    conductance = np.repeat(np.broadcast_to(contact.conductance, facets), len(points.weight) // facets)
+    matrices = (jump[:, :, None] * jump[:, None, :]) * (points.weight * conductance)[:, None, None]
     matrices = matrices.reshape(facets, -1, *matrices.shape[1:]).sum(axis=1)
     return np.concatenate([contact.inner, contact.outer]), matrices

@@ -158,6 +158,14 @@ class March:
         return slope, powers
 
 
+def _expected(size: float, previous: float) -> float:
+    """Next change of an iteration that converges linearly (Hairer and Wanner, Solving Ordinary Differential
+    Equations II, 2nd ed. 1996, sec. IV.8); the change itself where there is no rate yet."""
+    if np.isfinite(previous) and size < previous:
+        return size * size / (previous - size)
+    return size
+
+
 class _Trial:
     """One attempted step."""
 
@@ -204,24 +212,24 @@ class _Trial:
         base = self.state + (self.step * STAGES[stage, :stage]) @ self.slopes[:stage]
         value = system.with_fixed(base + self.weight * self.slopes[stage - 1], time)
         held = system.capacity_times(base)
-        corrections = self.matrix.at_stage(value, time)
+        border = self.matrix.at_stage(value, time)
         previous, renewed = np.inf, False
         for iteration in range(MOST_ITERATIONS):
             residual = self.matrix.constant_times(value) - held - self.weight * system.loads(value, time)[0]
-            change = self.matrix.solve(system.free(residual), corrections)
+            change = self.matrix.solve(system.free(residual), border)
             value = value - change
             self.march.counters.iterations += 1
             size = system.largest(change, self.state)
             if not np.isfinite(size):
                 return False
-            if size < tolerance:
+            if _expected(size, previous) < tolerance:
                 self._keep(stage, value, base, time)
                 return True
             if iteration >= EARLY and size > SLOW * previous and not renewed:
                 self._linearise(NODES[stage], value)
                 renewed, size = True, np.inf
             if size > STEEP:
-                corrections = self.matrix.at_stage(value, time)
+                border = self.matrix.at_stage(value, time)
             previous = size
         return False
 

@@ -12,7 +12,7 @@ from itertools import pairwise
 import numpy as np
 from numpy.typing import NDArray
 
-from cupfem.conduction import Conduction, slope_data
+from cupfem.conduction import Conduction
 from cupfem.drink import Ambient, Drink, Lumped
 from cupfem.edges import TO_DRINK
 from cupfem.linear import Factor, Operator
@@ -131,13 +131,14 @@ class System:
 
     def conducted(self, state: Floats) -> Floats:
         """Constant conduction K T of the walls [W]; zero for the drink."""
-        return self._by_section([section.conduction.stiffness for section in self.sections], state, 0.0)
+        return self.by_section([section.conduction.stiffness for section in self.sections], state, 0.0)
 
     def capacity_times(self, state: Floats) -> Floats:
         """M T of the walls; the drink's state itself."""
-        return self._by_section([section.conduction.mass for section in self.sections], state, 1.0)
+        return self.by_section([section.conduction.mass for section in self.sections], state, 1.0)
 
-    def _by_section(self, operators: Sequence[Operator], state: Floats, drink: float) -> Floats:
+    def by_section(self, operators: Sequence[Operator], state: Floats, drink: float) -> Floats:
+        """Operators applied to their sections; the drink's own state times a factor."""
         out = np.empty(len(state))
         for operator, part in zip(operators, self.slices, strict=True):
             out[part] = operator @ state[part]
@@ -168,15 +169,28 @@ class System:
         return float(np.max(np.abs(self.drink_state(change)) / scales))
 
 
+@dataclass(frozen=True, eq=False)
+class Border:
+    """The drink's rows and columns after elimination of the walls, at one wetted part.
+
+    `gains` are the walls' low-rank corrections (None where there is none), `rows` how the drink answers to
+    the walls, `answers` how the walls answer to the drink, `inverse` that of the Schur complement.
+    """
+
+    gains: list[Floats | None]
+    rows: list[Floats]
+    answers: list[Floats]
+    inverse: Floats
+
+
 class Linearised:
     """M + w K of each section, factorised, with the drink as a border; w is the step times the scheme's
     diagonal.
 
     The border couples both ways: how walls and drink answer to the drink's state (columns, by difference
-    quotients) and how the
-    drink answers to the walls (rows, from the films' slopes). The Schur complement is a small dense matrix.
-    Where the level moves
-    within the step the wetted part differs from stage to stage; `at_stage` gives the low-rank correction.
+    quotients) and how the drink answers to the walls (rows, from the films' slopes). The Schur complement is
+    a small dense matrix. Where the level moves within the step the wetted part differs from stage to stage:
+    `at_stage` corrects matrix and border by a low rank.
     """
 
     def __init__(
@@ -188,32 +202,41 @@ class Linearised:
     ):
         self.system, self.weight = system, weight
         lumped = tuple(system.lumped(state) for state in states)
-        state, time = states[1], times[1]
         self.constant: list[Operator] = []
         self._factors: list[Factor] = []
         self._moving: list[_MovingLevel] = []
         passed: list[Floats] = []
         for index, section in enumerate(system.sections):
-            wall = system.wall(state, index)
-            self._add_section(section, wall, lumped[1], time, passed)
+            wall = system.wall(states[1], index)
+            passed.append(section.share * self._add_section(section, wall, lumped[1], times[1]))
             moving = _MovingLevel(section, (lumped[0], lumped[2]), (times[0], times[2]), self._factors[-1])
-            moving.refer_to(wall, lumped[1], time, weight)
+            moving.refer_to(wall, lumped[1], times[1], weight)
             self._moving.append(moving)
-        if system.drink is not None:
-            self._add_border(state, time, passed)
+        self._border = self._make_border(states[1], times[1], passed)
 
-    def _add_section(
-        self, section: Section, wall: Floats, lumped: Lumped, time: float, passed: list[Floats]
-    ) -> None:
+    def _add_section(self, section: Section, wall: Floats, lumped: Lumped, time: float) -> Floats:
+        """Factorise a section's matrix; returns the slope of the heat that it passes to the drink."""
         conduction = section.conduction
         constant = conduction.mass.data + self.weight * conduction.stiffness.data
         self.constant.append(conduction.pattern.operator(constant))
-        data, heat_passed = _film_slopes(conduction, wall, lumped, time)
+        data, passed = _film_slopes(conduction, wall, lumped, time)
         matrix = constant + self.weight * (data + conduction.varying_data(wall))
         self._factors.append(conduction.pattern.factor(matrix, conduction.fixed))
-        passed.append(section.share * heat_passed)
+        return passed
 
-    def _add_border(self, state: Floats, time: float, passed: list[Floats]) -> None:
+    def _make_border(self, state: Floats, time: float, passed: list[Floats]) -> Border | None:
+        system = self.system
+        if system.drink is None:
+            return None
+        columns = self._border_columns(state, time)
+        self._own = np.eye(columns.shape[1]) + columns[-columns.shape[1] :]
+        answers = [
+            factor.solve(columns[part]) for factor, part in zip(self._factors, system.slices, strict=True)
+        ]
+        rows = [-self.weight * heat for heat in passed]
+        return Border([None] * len(rows), rows, answers, self._inverse(rows, answers))
+
+    def _border_columns(self, state: Floats, time: float) -> Floats:
         system = self.system
         assert system.drink is not None
         scales = BORDER_STEP * system.drink.scales(system.drink_state(state))
@@ -223,43 +246,48 @@ class Linearised:
             moved = state.copy()
             system.drink_state(moved)[index] += scale
             columns[:, index] = system.free((system.loads(moved, time)[0] - here) * (-self.weight / scale))
-        self._small = np.eye(len(scales)) + columns[-len(scales) :]
-        receives = np.array([0.0, 1.0])
-        self._rows, self._answers = [], []
-        for factor, part, heat in zip(self._factors, system.slices, passed, strict=True):
-            answer = factor.solve(columns[part])
-            row = -self.weight * np.outer(receives, heat)
-            self._small -= row @ answer
-            self._rows.append(row)
-            self._answers.append(answer)
+        return columns
+
+    def _inverse(self, rows: list[Floats], answers: list[Floats]) -> Floats:
+        """Inverse Schur complement; the walls act on the drink's enthalpy, the second of its unknowns."""
+        small = self._own.copy()
+        small[1] -= sum(row @ answer for row, answer in zip(rows, answers, strict=True))
+        return np.asarray(np.linalg.inv(small))
 
     def constant_times(self, state: Floats) -> Floats:
         """(M + w K) T without films and varying conductivities."""
-        return self.system._by_section(self.constant, state, 1.0)
+        return self.system.by_section(self.constant, state, 1.0)
 
-    def at_stage(self, state: Floats, time: float) -> list[Floats | None]:
-        """Corrections for the wetted part of a stage."""
+    def at_stage(self, state: Floats, time: float) -> Border | None:
+        """The border with matrix and rows corrected for the wetted part of a stage."""
+        border = self._border
+        if border is None or not any(moving.present for moving in self._moving):
+            return border
         lumped = self.system.lumped(state)
-        return [
-            moving.correction(self.system.wall(state, index), lumped, time)
-            for index, moving in enumerate(self._moving)
-        ]
+        gains, rows, answers = [], [], []
+        for index, moving in enumerate(self._moving):
+            gain, heat = moving.correction(self.system.wall(state, index), lumped, time)
+            share = self.system.sections[index].share
+            gains.append(gain)
+            answers.append(moving.corrected(border.answers[index], gain))
+            rows.append(moving.add_to(border.rows[index], -self.weight * share * heat))
+        return Border(gains, rows, answers, self._inverse(rows, answers))
 
-    def solve(self, residual: Floats, corrections: Sequence[Floats | None] = ()) -> Floats:
-        """Newton change for a residual."""
+    def solve(self, residual: Floats, border: Border | None = None) -> Floats:
+        """Newton change for a residual, with the border of a stage."""
         system = self.system
+        border = border or self._border
         out = np.empty(len(residual))
         for index, (factor, part) in enumerate(zip(self._factors, system.slices, strict=True)):
-            out[part] = factor.solve(residual[part])
-            correction = corrections[index] if corrections else None
-            if correction is not None:
-                self._moving[index].correct(out[part], correction)
-        if system.drink is not None:
+            change = factor.solve(residual[part])
+            gain = border.gains[index] if border else None
+            out[part] = change if gain is None else self._moving[index].corrected(change, gain)
+        if border is not None:
             rest = system.drink_state(residual).copy()
-            for row, part in zip(self._rows, system.slices, strict=True):
-                rest -= row @ out[part]
-            lumped = np.linalg.solve(self._small, rest)
-            for answer, part in zip(self._answers, system.slices, strict=True):
+            for row, part in zip(border.rows, system.slices, strict=True):
+                rest[1] -= row @ out[part]
+            lumped = border.inverse @ rest
+            for answer, part in zip(border.answers, system.slices, strict=True):
                 out[part] -= answer @ lumped
             system.drink_state(out)[:] = lumped
         return out
@@ -269,9 +297,8 @@ class _MovingLevel:
     """Low-rank correction where the bounds of partly wetted edges move over the step.
 
     With E the columns of the identity at the unknowns that a bound passes, and C the change of the film
-    matrix there,
-    (A + E C E^T)^-1 r = x - Z (I + C Z_E)^-1 C x_E with x = A^-1 r and Z = A^-1 E (Sherman-Morrison-Woodbury
-    formula; Golub and Van Loan, Matrix Computations, 4th ed. 2013, sec. 2.1.4).
+    matrix there, (A + E C E^T)^-1 r = x - Z G x_E with x = A^-1 r, Z = A^-1 E, G = (I + C Z_E)^-1 C
+    (Sherman-Morrison-Woodbury formula; Golub and Van Loan, Matrix Computations, 4th ed. 2013, sec. 2.1.4).
     """
 
     def __init__(
@@ -284,44 +311,55 @@ class _MovingLevel:
                 dofs, span = exchange.facets_between(low, high)
                 self._exchanges.append((exchange, span))
                 unknowns.append(dofs)
-        fixed = section.conduction.fixed
-        self._unknowns = np.setdiff1d(np.concatenate(unknowns), fixed)
-        if len(self._unknowns):
+        self._unknowns = np.setdiff1d(np.concatenate(unknowns), section.conduction.fixed)
+        self.present = len(self._unknowns) > 0
+        if self.present:
             unit = np.zeros((section.conduction.mesh.size, len(self._unknowns)))
             unit[self._unknowns, np.arange(len(self._unknowns))] = 1.0
             self._answers = factor.solve(unit)
+            self._own = self._answers[self._unknowns]
 
     def refer_to(self, wall: Floats, lumped: Lumped, time: float, weight: float) -> None:
         """Take the film matrix at this state as the reference."""
         self._weight = weight
-        if len(self._unknowns):
+        if self.present:
             self._reference = self._films(wall, lumped, time)
 
-    def correction(self, wall: Floats, lumped: Lumped, time: float) -> Floats | None:
-        """C for a state."""
-        if not len(self._unknowns):
-            return None
-        return self._weight * (self._films(wall, lumped, time) - self._reference)
+    def correction(self, wall: Floats, lumped: Lumped, time: float) -> tuple[Floats | None, Floats]:
+        """G for a state, and the change of the slope of the heat passed to the drink at the unknowns E."""
+        if not self.present:
+            return None, np.zeros(0)
+        films, heat = self._films(wall, lumped, time)
+        change = self._weight * (films - self._reference[0])
+        gain = np.linalg.solve(np.eye(len(change)) + change @ self._own, change)
+        return np.asarray(gain), heat - self._reference[1]
 
-    def correct(self, solution: Floats, correction: Floats) -> None:
-        """Apply C to a solution of the uncorrected system (in place)."""
-        here = self._answers[self._unknowns]
-        inner = np.eye(len(here)) + correction @ here
-        solution -= self._answers @ np.linalg.solve(inner, correction @ solution[self._unknowns])
+    def corrected(self, solution: Floats, gain: Floats | None) -> Floats:
+        """A solution of the uncorrected system, corrected."""
+        if gain is None:
+            return solution
+        return np.asarray(solution - self._answers @ (gain @ solution[self._unknowns]))
 
-    def _films(self, wall: Floats, lumped: Lumped, time: float) -> Floats:
+    def add_to(self, row: Floats, values: Floats) -> Floats:
+        """A row with values added at the unknowns E."""
+        row = row.copy()
+        row[self._unknowns] += values
+        return row
+
+    def _films(self, wall: Floats, lumped: Lumped, time: float) -> tuple[Floats, Floats]:
         size = len(self._unknowns)
-        out = np.zeros((size, size))
+        matrix, heat = np.zeros((size, size)), np.zeros(size)
         for exchange, span in self._exchanges:
             points = exchange.points_within(span, lumped, time)
             if len(points.weight):
-                slope = exchange.slope(points, points.interpolate(wall), lumped, time)
+                slope = points.weight * exchange.slope(points, points.interpolate(wall), lumped, time)
                 place = np.minimum(np.searchsorted(self._unknowns, points.dofs), size - 1)
-                known = self._unknowns[place] == points.dofs
-                shape = points.shape * known
-                local = shape[:, :, None] * shape[:, None, :] * (points.weight * slope)[:, None, None]
-                np.add.at(out, (place[:, :, None], place[:, None, :]), local)
-        return out
+                shape = points.shape * (self._unknowns[place] == points.dofs)
+                local = shape[:, :, None] * shape[:, None, :] * slope[:, None, None]
+                np.add.at(matrix, (place[:, :, None], place[:, None, :]), local)
+                if exchange.exchange.to_drink:
+                    np.add.at(heat, place, shape * slope[:, None])
+        return matrix, heat
 
 
 def _film_slopes(conduction: Conduction, wall: Floats, lumped: Lumped, time: float) -> tuple[Floats, Floats]:
@@ -332,10 +370,10 @@ def _film_slopes(conduction: Conduction, wall: Floats, lumped: Lumped, time: flo
     for exchange in conduction.exchanges:
         points = exchange.points(lumped, time)
         if len(points.weight):
-            slope = exchange.slope(points, points.interpolate(wall), lumped, time)
-            data += slope_data(conduction.pattern, points, slope)
+            slope = points.weight * exchange.slope(points, points.interpolate(wall), lumped, time)
+            exchange.add_slope(data, points, slope)
             if exchange.exchange.to_drink:
-                np.add.at(passed, points.dofs, points.shape * (points.weight * slope)[:, None])
+                np.add.at(passed, points.dofs, points.shape * slope[:, None])
     return data, passed
 
 
