@@ -67,6 +67,7 @@ class Layer(Table):
         "from": "the table",
         "to": "the brim",
         "contact": "perfect",
+        "fit": "glued",
         "pressure": "that of the room",
     }
 
@@ -84,6 +85,8 @@ class Layer(Table):
     """Length over which the layers outside move in where this one stops."""
     contact: Annotated[FilmCoefficient, Positive] | None = None
     """Conductance between what is outside and what is inside where this layer stops; left out: perfect."""
+    fit: Annotated[FilmCoefficient, Positive] | None = None
+    """Conductance of a loose fit to what is inside, over the whole layer; left out: glued, perfect."""
     contact_fraction: Fraction = 0.0
     """Share of a gap's area where its two plies touch."""
     contact_conductance: Annotated[FilmCoefficient, Positive] = 100.0
@@ -190,6 +193,8 @@ class Cup(InputFile):
             if self.material(layer.material).kind != "gas":
                 keys = ("contact_fraction", "contact_conductance", "pressure")
                 reasons |= {f"layer.{layer.name}.{key}": "only a layer of gas has it" for key in keys}
+            else:
+                reasons[f"layer.{layer.name}.fit"] = "a gas lies close to what is inside it"
         return reasons
 
     def blends(self, layer: Layer) -> tuple[float, float]:
@@ -323,10 +328,18 @@ def _check_stack(cup: Cup, low: float, high: float) -> None:
         raise _misplaced(
             stack[-1], f"{where} it is outermost: nothing holds the gas", "put a solid outside it"
         )
+    if stack[0].fit is not None:
+        raise _loose(stack[0], f"{where} it is innermost: nothing lies inside it")
     for (inside, inner_gas), (outside, outer_gas) in pairwise(zip(stack, gas, strict=True)):
+        if inner_gas and outside.fit is not None:
+            raise _loose(outside, f'{where} it lies on "{inside.name}", a gas, which has no contact')
         if inner_gas and outer_gas:
             why = f'{where} it lies on "{inside.name}", another layer of gas'
             raise _misplaced(outside, why, "make them one layer, or put a solid between them")
+
+
+def _loose(layer: Layer, why: str) -> Exception:
+    return refused(why, "leave it out", f"layer.{layer.name}.fit", f"{layer.fit:g} W/(m^2 K)")
 
 
 def _misplaced(layer: Layer, why: str, instead: str) -> Exception:

@@ -10,6 +10,7 @@ geometry, e.g. Bronshtein and Semendyayev, Handbook of Mathematics, section on b
 
 from __future__ import annotations
 
+from collections.abc import Callable
 from dataclasses import dataclass, field
 from functools import cached_property
 
@@ -21,6 +22,8 @@ from cupfem.errors import InputError
 from cupfem.materials import Material
 
 Floats = NDArray[np.float64]
+Conductance = Callable[[Floats], Floats]
+"""Contact conductance [W/(m2 K)] at heights on the inside face [m]."""
 
 MINIMUM_THICKNESS = 1e-9
 """A layer thinner than this [m] is absent."""
@@ -89,7 +92,8 @@ class LayerBand:
     """One layer of the wall between two heights.
 
     `blend` is the length over which the layers outside move in where this layer stops; zero where nothing
-    lies outside.
+    lies outside. `inner_conductance` [W/(m2 K)] couples the layer to what is inside it, over its whole
+    reach: a number, or a function of heights on the inside face [m]; infinite where it is glued.
     """
 
     name: str
@@ -100,6 +104,18 @@ class LayerBand:
     blend_low: float = 0.0
     blend_high: float = 0.0
     closing_conductance: float = np.inf
+    inner_conductance: float | Conductance = np.inf
+
+    @property
+    def loose(self) -> bool:
+        """Whether a contact conductance lies between this layer and what is inside it."""
+        return callable(self.inner_conductance) or bool(np.isfinite(self.inner_conductance))
+
+    def inner_conductance_at(self, height: ArrayLike) -> Floats:
+        """Contact conductance of the inner face [W/(m2 K)] at heights [m]."""
+        z = np.asarray(height, dtype=float)
+        given = self.inner_conductance
+        return np.broadcast_to(np.asarray(given(z) if callable(given) else given, dtype=float), z.shape)
 
     def thickness_at(self, height: ArrayLike) -> Floats:
         """Thickness [m] at heights; over a blend it falls to nothing along a smooth step (no kink at either
@@ -229,6 +245,7 @@ def _band(cup: Cup, index: int, ranges: list[tuple[float, float]]) -> LayerBand:
         blend_low,
         blend_high,
         conductance,
+        np.inf if layer.fit is None else layer.fit,
     )
 
 

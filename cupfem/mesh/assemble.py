@@ -39,7 +39,8 @@ class Assembler:
         self.keys = np.array([2.0 * station, 2.0 * line])
         arc = wall.meridian.profile.arc_length_at(wall.z)
         self.wall_coordinates = np.array([arc[station], wall.offsets[station, line]])
-        self.nodes_across = int(np.max([len(np.unique(row)) for row in wall.line]) - 1) * self.order + 1
+        cells, doubled = wall.nodes_across
+        self.nodes_across = cells * self.order + 1 + doubled
 
     # -- cells of the wall -----------------------------------------------------------------------------------
 
@@ -52,7 +53,7 @@ class Assembler:
             self._layer_cells(index, layer)
 
     def _layer_cells(self, index: int, layer: LayerBand) -> None:
-        start, stop = int(self.wall.first_line[index]), int(self.wall.first_line[index + 1])
+        start, stop = int(self.wall.first_line[index]), int(self.wall.last_line[index])
         middle = 0.5 * (self.wall.z[:-1] + self.wall.z[1:])
         body = (middle > layer.low) & (middle < layer.high)
         if layer.material.kind == "gas":
@@ -215,9 +216,9 @@ class Assembler:
             edges["skirt"] = face[:, :low]
             edges["floor"] = np.array([self.base_grid[:-1, -1], self.base_grid[1:, -1]])[::-1, ::-1]
             edges["underside"] = np.array([self.base_grid[:-1, 0], self.base_grid[1:, 0]])[::-1, ::-1]
-        edges["heel"] = _distinct(np.array([v[0, :-1], v[0, 1:]]))
-        edges["brim"] = _distinct(np.array([v[last, :-1], v[last, 1:]]))
-        taken = facet_of.indices(np.concatenate([*edges.values(), self._slits()], axis=1))
+        edges["heel"], edges["brim"] = self._end(0), self._end(last)
+        hidden = [pairs for inner, outer, _ in self._contact_pairs() for pairs in (inner, outer)]
+        taken = facet_of.indices(np.concatenate([*edges.values(), self._slits(), *hidden], axis=1))
         rest = np.setdiff1d(grid.boundary_facets(), taken)
         outside = grid.facets[:, rest]
         outside = outside[:, (self.vertices[0, outside] > 1e-12).any(axis=0)]
@@ -225,6 +226,15 @@ class Assembler:
         for name in ("inside", "outside"):
             edges |= self._by_layer(name, edges[name], grid, facet_of)
         return edges
+
+    def _end(self, station: int) -> Ints:
+        """Facets across the layers that stand at a station."""
+        wall, v = self.wall, self.vertex[station]
+        pairs = [np.zeros((2, 0), dtype=int)]
+        for index in np.flatnonzero(wall.standing[:, station]):
+            across = v[wall.first_line[index] : wall.last_line[index] + 1]
+            pairs.append(np.array([across[:-1], across[1:]]))
+        return np.concatenate(pairs, axis=1)
 
     def _by_layer(self, name: str, pairs: Ints, grid: MeshQuad, facet_of: _FacetIndex) -> dict[str, Ints]:
         """The parts of an edge that belong to each layer, as `edge.layer`."""
@@ -248,7 +258,8 @@ class Assembler:
         pairs = [np.zeros((2, 0), dtype=int)]
         v = self.vertex
         for index in range(len(self.wall.fractions) - 1):
-            start, stop = int(self.wall.first_line[index]), int(self.wall.first_line[index + 1])
+            start, stop = int(self.wall.first_line[index]), int(self.wall.last_line[index])
+            inside = self.wall.line_inside(index)
             present = self.wall.present[index].astype(int)
             outside = np.asarray(self.wall.present[index + 1 :].any(axis=0))
             for i in np.flatnonzero(np.diff(present)):
@@ -258,7 +269,7 @@ class Assembler:
                     pairs.append(np.array([column[:-1], column[1:]]))
                     pairs.append(
                         np.array(
-                            [[v[empty, start], v[empty, stop]], [v[empty + 1, start], v[empty + 1, stop]]]
+                            [[v[empty, inside], v[empty, stop]], [v[empty + 1, inside], v[empty + 1, stop]]]
                         )
                     )
         return np.concatenate(pairs, axis=1)
@@ -271,18 +282,33 @@ class Assembler:
             for name in wanted
         }
 
-    def _contacts(self, facet_of: _FacetIndex) -> tuple[Contact, ...]:
-        contacts = []
-        v = self.vertex
-        for index, layer in enumerate(self.wall.meridian.layers[:-1]):
-            if not np.isfinite(layer.closing_conductance):
-                continue
-            start, stop = int(self.wall.first_line[index]), int(self.wall.first_line[index + 1])
+    def _contact_pairs(self) -> list[tuple[Ints, Ints, float | Floats]]:
+        """Pairs of vertices of the facets inside and outside of each contact, and its conductance."""
+        found = []
+        middle = 0.5 * (self.wall.z[:-1] + self.wall.z[1:])
+        for index, layer in enumerate(self.wall.meridian.layers):
+            inside, start, stop = (
+                self.wall.line_inside(index),
+                int(self.wall.first_line[index]),
+                int(self.wall.last_line[index]),
+            )
             apart = self.wall.keeps_apart(index)
-            i = np.flatnonzero(apart[:-1] & apart[1:])
-            inner, outer = (np.array([v[i, line], v[i + 1, line]]) for line in (start, stop))
-            contacts.append(Contact(facet_of(inner), facet_of(outer), layer.closing_conductance))
-        return tuple(contacts)
+            closed = np.flatnonzero(apart[:-1] & apart[1:])
+            found.append((*self._facing(closed, inside, stop), layer.closing_conductance))
+            if index and layer.loose:
+                i = np.flatnonzero(self.wall.present[index])
+                found.append((*self._facing(i, inside, start), layer.inner_conductance_at(middle[i])))
+        return [contact for contact in found if contact[0].shape[1]]
+
+    def _facing(self, intervals: Ints, inner: int, outer: int) -> tuple[Ints, Ints]:
+        v, i = self.vertex, intervals
+        return np.array([v[i, inner], v[i + 1, inner]]), np.array([v[i, outer], v[i + 1, outer]])
+
+    def _contacts(self, facet_of: _FacetIndex) -> tuple[Contact, ...]:
+        return tuple(
+            Contact(facet_of(inner), facet_of(outer), conductance)
+            for inner, outer, conductance in self._contact_pairs()
+        )
 
 
 class _FacetIndex:
@@ -313,7 +339,3 @@ class _FacetIndex:
         if self._degree == 1:
             return np.asarray(ends)
         return np.concatenate([ends, self._rank[self._facet_dofs[0, self.indices(pairs)]][None, :]])
-
-
-def _distinct(pairs: Ints) -> Ints:
-    return pairs[:, pairs[0] != pairs[1]]

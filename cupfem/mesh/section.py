@@ -27,11 +27,15 @@ class GapFaces:
 
 @dataclass(frozen=True, eq=False)
 class Contact:
-    """Two facets at the same place that exchange heat through a contact conductance [W/(m2 K)]."""
+    """Facets in pairs at the same place that exchange heat through a contact conductance [W/(m2 K)].
+
+    `inner` and `outer` are `[3, facet]` or `[2, facet]`; the conductance is a number, or one for each
+    `[facet]`.
+    """
 
     inner: Ints
     outer: Ints
-    conductance: float
+    conductance: float | Floats
 
 
 @dataclass(frozen=True, eq=False)

@@ -3,6 +3,7 @@
 from __future__ import annotations
 
 from collections.abc import Mapping
+from functools import cached_property
 from itertools import pairwise
 
 import numpy as np
@@ -90,7 +91,7 @@ class Wall:
         )
         default = default_fractions(meridian, fineness)
         self.fractions = [np.asarray(fractions.get(la.name, default[la.name])) for la in meridian.layers]
-        self.first_line = np.concatenate([[0], np.cumsum([len(f) - 1 for f in self.fractions])])
+        self.first_line, self.last_line = self._line_ranges()
         at_stations = np.array([layer.thickness_at(self.z) for layer in meridian.layers])
         self.thickness = np.where(at_stations > MINIMUM_THICKNESS, at_stations, 0.0)
         self.present = np.minimum(self.thickness[:, :-1], self.thickness[:, 1:]) > 0.0
@@ -102,7 +103,26 @@ class Wall:
 
     @property
     def lines(self) -> int:
-        return int(self.first_line[-1]) + 1
+        return int(self.last_line[-1]) + 1
+
+    def _line_ranges(self) -> tuple[Ints, Ints]:
+        """First and last line of each layer: neighbours share one, but for a layer that lies loosely."""
+        cells = np.array([len(f) - 1 for f in self.fractions])
+        extra = np.cumsum([index > 0 and layer.loose for index, layer in enumerate(self.meridian.layers)])
+        first = np.concatenate([[0], np.cumsum(cells)[:-1]]) + extra
+        return first, first + cells
+
+    def line_inside(self, index: int) -> int:
+        """Line on which a layer lies: the last of the layer inside it."""
+        return int(self.last_line[index - 1]) if index else 0
+
+    @cached_property
+    def nodes_across(self) -> tuple[int, int]:
+        """Most cells across at any station, and most lines that stand there twice for a contact."""
+        counts = [len(f) - 1 for f in self.fractions]
+        cells = (self.standing * np.array(counts)[:, None]).sum(axis=0)
+        lines = np.array([len(np.unique(row)) for row in self.line])
+        return int(cells.max()), int((lines - 1 - cells).max())
 
     def _offsets(self) -> Floats:
         """Distance of each line from the inside face along the normal, `[station, line]`."""
@@ -110,7 +130,7 @@ class Wall:
         arc = self.meridian.profile.arc_length_at(self.z)
         for index, fractions in enumerate(self.fractions):
             start = self.first_line[index]
-            inner = offsets[:, start]
+            inner = offsets[:, self.line_inside(index)]
             # A layer that runs at an angle to the wall keeps its own thickness: the column cuts it obliquely.
             oblique = np.sqrt(1.0 + self._inner_slope(index, arc) ** 2)
             thickness = self.thickness[index] * oblique * self.standing[index]
@@ -136,10 +156,11 @@ class Wall:
         collapse."""
         line = np.broadcast_to(np.arange(self.lines), (len(self.z), self.lines)).copy()
         for index in range(len(self.fractions)):
-            start, stop = self.first_line[index], self.first_line[index + 1]
+            start, stop = self.first_line[index], self.last_line[index]
             absent = ~self.standing[index]
-            line[absent, start + 1 : stop] = line[absent, start][:, None]
-            line[absent, stop] = np.where(self.keeps_apart(index)[absent], stop, line[absent, start])
+            inside = line[absent, self.line_inside(index)]
+            line[absent, start:stop] = inside[:, None]
+            line[absent, stop] = np.where(self.keeps_apart(index)[absent], stop, inside)
         return line
 
     def keeps_apart(self, index: int) -> NDArray[np.bool_]:
