@@ -1,0 +1,1 @@
+"""A finger on the wall: skin columns, criteria, hold time."""
