@@ -159,28 +159,45 @@ class EdgeQuadrature:
             return self._slice(low, high)
         inside = (self._low >= low) & (self._high <= high) & ~(self._level & (self._high == high))
         cut = np.flatnonzero(~inside & (self._low < high) & (self._high > low) & ~self._level)
-        whole = np.repeat(inside, len(_GAUSS_POINTS))
-        return self._with_cuts(_part(self._whole, whole), cut, low, high)
+        whole = _part(self._whole, np.repeat(inside, len(_GAUSS_POINTS)))
+        return _join([whole, self._cut_many(cut, low, high)]) if len(cut) else whole
 
     def _slice(self, low: float, high: float) -> EdgePoints:
-        first = int(np.searchsorted(self._low, low))
-        last = int(np.searchsorted(self._high, high, side="right"))
-        touched = [
-            place
-            for place in {first - 1, last}
-            if 0 <= place < len(self._low) and self._low[place] < high and self._high[place] > low
-        ]
+        first = int(self._low.searchsorted(low))
+        last = int(self._high.searchsorted(high, side="right"))
         count = len(_GAUSS_POINTS)
-        whole = _part(self._whole, slice(count * first, count * max(first, last)))
-        return self._with_cuts(whole, np.array(sorted(touched), dtype=int), low, high)
+        parts = [_part(self._whole, slice(count * first, count * last))] if last > first else []
+        for place in {first - 1, last}:
+            if 0 <= place < len(self._low) and self._low[place] < high and self._high[place] > low:
+                parts.append(self._cut_one(place, low, high))
+        if not parts:
+            return _part(self._whole, slice(0, 0))
+        return parts[0] if len(parts) == 1 else _join(parts)
 
-    def _with_cuts(self, whole: EdgePoints, cut: Ints, low: float, high: float) -> EdgePoints:
-        if not len(cut):
-            return whole
+    def _cut_one(self, place: int, low: float, high: float) -> EdgePoints:
+        start, end = float(self._start[1, place]), float(self._end[1, place])
+        bounds = sorted(((low - start) / (end - start), (high - start) / (end - start)))
+        first, last = max(bounds[0], 0.0), min(bounds[1], 1.0)
+        x = first + (last - first) * _GAUSS_POINTS
+        r_start, r_end = float(self._start[0, place]), float(self._end[0, place])
+        radius = r_start + x * (r_end - r_start)
+        fraction = (last - first) * float(self._length[place]) * _GAUSS_WEIGHTS
+        dofs = np.broadcast_to(self._dofs[:, place], (len(x), len(self._dofs)))
+        weight = fraction * self._measure.weight(radius)
+        return EdgePoints(dofs, self._shape(x), weight, start + x * (end - start), radius)
+
+    def _cut_many(self, cut: Ints, low: float, high: float) -> EdgePoints:
         start, rise = self._start[1, cut], self._end[1, cut] - self._start[1, cut]
         ends = np.array([(low - start) / rise, (high - start) / rise])
         ends = np.minimum(np.maximum(np.sort(ends, axis=0), 0.0), 1.0)
-        return _join(whole, self._points(cut, ends[0], ends[1]))
+        return self._points(cut, ends[0], ends[1])
+
+    def _shape(self, x: Floats) -> Floats:
+        """Shape functions `[point, local]` at places 0 to 1 along a facet."""
+        rest = 1.0 - x
+        if self._quadratic:
+            return np.array([rest * (rest - x), x * (x - rest), 4.0 * x * rest]).T
+        return np.array([rest, x]).T
 
     def facets_between(self, low: float, high: float) -> tuple[Ints, tuple[float, float]]:
         """Unknowns of the facets that a range of heights touches, and the span of heights that they
@@ -198,16 +215,8 @@ class EdgeQuadrature:
         facet = np.repeat(facets, len(_GAUSS_POINTS))
         start = self._start[:, facet]
         radius, height = start + x * (self._end[:, facet] - start)
-        shape = np.empty((len(x), len(self._dofs)))
-        rest = 1.0 - x
-        if self._quadratic:
-            shape[:, 0] = rest * (1.0 - 2.0 * x)
-            shape[:, 1] = x * (2.0 * x - 1.0)
-            shape[:, 2] = 4.0 * x * rest
-        else:
-            shape[:, 0], shape[:, 1] = rest, x
         weight = fraction * self._length[facet] * self._measure.weight(radius)
-        return EdgePoints(self._dofs[:, facet].T, shape, weight, height, radius)
+        return EdgePoints(self._dofs[:, facet].T, self._shape(x), weight, height, radius)
 
 
 def _part(points: EdgePoints, chosen: slice | NDArray[np.bool_]) -> EdgePoints:
@@ -220,11 +229,11 @@ def _part(points: EdgePoints, chosen: slice | NDArray[np.bool_]) -> EdgePoints:
     )
 
 
-def _join(one: EdgePoints, other: EdgePoints) -> EdgePoints:
+def _join(parts: list[EdgePoints]) -> EdgePoints:
     return EdgePoints(
-        np.concatenate([one.dofs, other.dofs]),
-        np.concatenate([one.shape, other.shape]),
-        np.concatenate([one.weight, other.weight]),
-        np.concatenate([one.height, other.height]),
-        np.concatenate([one.radius, other.radius]),
+        np.concatenate([part.dofs for part in parts]),
+        np.concatenate([part.shape for part in parts]),
+        np.concatenate([part.weight for part in parts]),
+        np.concatenate([part.height for part in parts]),
+        np.concatenate([part.radius for part in parts]),
     )

@@ -10,6 +10,8 @@ geometry, e.g. Bronshtein and Semendyayev, Handbook of Mathematics, section on b
 
 from __future__ import annotations
 
+import math
+from bisect import bisect_right
 from collections.abc import Callable
 from dataclasses import dataclass, field
 from functools import cached_property
@@ -63,28 +65,34 @@ class Profile:
         return np.array([np.cos(angle), -np.sin(angle)])
 
     @cached_property
-    def _volumes(self) -> Floats:
-        pieces = _frustum(np.diff(self.height), self.radius[:-1], self.radius[1:])
-        return np.concatenate([[0.0], np.cumsum(pieces)])
+    def _pieces(self) -> tuple[list[float], list[float], list[float], list[float]]:
+        """Heights, radii, slopes of the straight pieces, and volumes below their lower ends, as plain floats:
+        the level is asked thousands of times in a run."""
+        slopes = np.diff(self.radius) / np.diff(self.height)
+        volumes = np.cumsum(_frustum(np.diff(self.height), self.radius[:-1], self.radius[1:]))
+        return self.height.tolist(), self.radius.tolist(), slopes.tolist(), [0.0, *volumes.tolist()]
 
     def volume_below(self, height: float) -> float:
         """Inside volume [m3] between the table and a height [m]."""
-        z = float(np.clip(height, self.height[0], self.height[-1]))
-        piece = min(int(np.searchsorted(self.height, z, side="right")) - 1, len(self.height) - 2)
-        start, radius = self.height[piece], self.radius[piece]
-        return float(self._volumes[piece] + _frustum(z - start, radius, self.radius_at(z)))
+        heights, radii, slopes, volumes = self._pieces
+        z = min(max(height, heights[0]), heights[-1])
+        piece = min(bisect_right(heights, z) - 1, len(slopes) - 1)
+        rise, radius = z - heights[piece], radii[piece]
+        upper = radius + slopes[piece] * rise
+        return volumes[piece] + math.pi / 3.0 * rise * (radius * radius + radius * upper + upper * upper)
 
     def height_of_volume(self, volume: float) -> float:
-        """Height [m] below which the inside volume [m3] is found; the inverse of `volume_below` to 1e-15
-        m."""
-        piece = int(
-            np.clip(np.searchsorted(self._volumes, volume, side="right") - 1, 0, len(self.height) - 2)
-        )
-        span = self.height[piece + 1] - self.height[piece]
-        slope = (self.radius[piece + 1] - self.radius[piece]) / span
-        return float(
-            self.height[piece] + _frustum_height(volume - self._volumes[piece], self.radius[piece], slope)
-        )
+        """Height [m] below which the inside volume [m3] is found; the inverse of `volume_below` to rounding.
+
+        In a frustum r_upper^3 = r^3 + 3 m V / pi, and V = pi/3 x (r^2 + r r_upper + r_upper^2) gives x
+        without the difference of the two radii, so that it holds for a cylinder (m = 0) too.
+        """
+        heights, radii, slopes, volumes = self._pieces
+        piece = min(max(bisect_right(volumes, volume) - 1, 0), len(slopes) - 1)
+        radius, part = radii[piece], 3.0 / math.pi * (volume - volumes[piece])
+        upper = math.cbrt(radius**3 + slopes[piece] * part)
+        squares = radius * radius + radius * upper + upper * upper
+        return heights[piece] + (part / squares if squares > 0.0 else 0.0)
 
 
 @dataclass(frozen=True, eq=False)
@@ -174,11 +182,15 @@ class Meridian:
 
     def volume(self, level: float) -> float:
         """Drink volume [m3] below a level [m]."""
-        return self.profile.volume_below(level) - self.profile.volume_below(self.floor)
+        return self.profile.volume_below(level) - self._volume_under_floor
 
     def level(self, volume: float) -> float:
         """Level [m] of a drink volume [m3]; exact inverse of `volume`."""
-        return self.profile.height_of_volume(max(volume, 0.0) + self.profile.volume_below(self.floor))
+        return self.profile.height_of_volume(max(volume, 0.0) + self._volume_under_floor)
+
+    @cached_property
+    def _volume_under_floor(self) -> float:
+        return self.profile.volume_below(self.floor)
 
     def surface_area(self, level: float) -> float:
         """Area of the drink's surface [m2]."""
@@ -262,16 +274,3 @@ def _smooth_step(x: Floats) -> Floats:
 def _frustum(height: ArrayLike, lower: ArrayLike, upper: ArrayLike) -> Floats:
     lower, upper = np.asarray(lower), np.asarray(upper)
     return np.asarray(np.pi / 3.0 * np.asarray(height) * (lower * lower + lower * upper + upper * upper))
-
-
-def _frustum_height(volume: float, radius: float, slope: float) -> float:
-    """Height of a frustum of given volume: pi/3 ((r + m x)^3 - r^3) / m = V, written so that it holds for m
-    = 0 too."""
-    x = volume / (np.pi * radius * radius) if radius > 0 else 0.0
-    for _ in range(60):
-        upper = radius + slope * x
-        step = (volume - float(_frustum(x, radius, upper))) / (np.pi * upper * upper)
-        x += step
-        if abs(step) <= 1e-16 + 1e-15 * abs(x):
-            break
-    return x
