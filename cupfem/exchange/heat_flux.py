@@ -68,5 +68,5 @@ def centre_shapes(mesh: SectionMesh) -> tuple[Floats, Floats]:
     centre = np.full((2, 1), 0.5)
     basis = Basis(mesh.grid, mesh.basis(np.zeros(1, dtype=int)).elem, quadrature=(centre, np.ones(1)))
     fields = [shape[0] for shape in basis.basis]
-    values = np.array([shape.value.flat[0] for shape in fields])
+    values = np.array([np.asarray(shape).flat[0] for shape in fields])
     return values, np.stack([np.asarray(shape.grad)[:, :, 0] for shape in fields], axis=1)
