@@ -72,6 +72,13 @@ class Profile:
         volumes = np.cumsum(_frustum(np.diff(self.height), self.radius[:-1], self.radius[1:]))
         return self.height.tolist(), self.radius.tolist(), slopes.tolist(), [0.0, *volumes.tolist()]
 
+    def radius_of(self, height: float) -> float:
+        """Inside radius [m] at one height [m]."""
+        heights, radii, slopes, _ = self._pieces
+        z = min(max(height, heights[0]), heights[-1])
+        piece = min(bisect_right(heights, z) - 1, len(slopes) - 1)
+        return radii[piece] + slopes[piece] * (z - heights[piece])
+
     def volume_below(self, height: float) -> float:
         """Inside volume [m3] between the table and a height [m]."""
         heights, radii, slopes, volumes = self._pieces
@@ -194,7 +201,7 @@ class Meridian:
 
     def surface_area(self, level: float) -> float:
         """Area of the drink's surface [m2]."""
-        return float(np.pi * self.profile.radius_at(level) ** 2)
+        return math.pi * self.profile.radius_of(level) ** 2
 
     def outer_offset_at(self, height: ArrayLike) -> Floats:
         """Distance from the inside face to the outer face along the normal [m]."""
