@@ -1,0 +1,26 @@
+"""Pictures: functions that take results and return a matplotlib Figure.
+
+No figure is shown or kept by this module, no global setting of matplotlib is changed, and pyplot is not
+imported. Every function takes ``units="us"`` too.
+"""
+
+from cupfem.figures.field import field_figure, field_times
+from cupfem.figures.files import png, svg, write_drawing, write_figures
+from cupfem.figures.heat import drink_figure, heat_figure
+from cupfem.figures.section import section_figure
+from cupfem.figures.wall import wall_history, wall_map, wall_profile
+
+__all__ = [
+    "drink_figure",
+    "field_figure",
+    "field_times",
+    "heat_figure",
+    "png",
+    "section_figure",
+    "svg",
+    "wall_history",
+    "wall_map",
+    "wall_profile",
+    "write_drawing",
+    "write_figures",
+]
