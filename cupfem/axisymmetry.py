@@ -154,7 +154,9 @@ class EdgeQuadrature:
         return self._whole
 
     def between(self, low: float = -np.inf, high: float = np.inf) -> EdgePoints:
-        """The part of the edge with low <= z < high [m]."""
+        """The part of the edge with low <= z < high [m]; nothing where high is not above low."""
+        if not low < high:
+            return _part(self._whole, slice(0, 0))
         if self._rising:
             return self._slice(low, high)
         inside = (self._low >= low) & (self._high <= high) & ~(self._level & (self._high == high))
