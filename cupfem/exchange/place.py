@@ -6,10 +6,12 @@ single step of the file system (POSIX rename), so a run that is killed leaves at
 
 from __future__ import annotations
 
+import ctypes
 import errno
 import itertools
 import os
 import shutil
+import sys
 from collections.abc import Callable, Iterator
 from contextlib import contextmanager
 from pathlib import Path
@@ -17,6 +19,8 @@ from pathlib import Path
 from cupfem.errors import InputError
 from cupfem.exchange.files import explained, shown
 
+_HERE, _RENAME_EXCHANGE = -100, 2
+"""AT_FDCWD (fcntl.h) and the flag of renameat2(2)."""
 INCOMPLETE = "-incomplete"
 WHAT = "run folder"
 MARKS = ("summary.json", "incomplete.txt")
@@ -63,9 +67,10 @@ def _check_taken(place: Path, force: bool) -> None:
 def write_whole(folder: Path, fill: Callable[[Path], None], *, force: bool = False) -> Path:
     """Fill a hidden folder and rename it to its place; without `force` the place must be free.
 
-    With `force` the old folder is renamed to a hidden name first and deleted last. Two renames are two steps:
-    killed exactly between them, the place is empty and both folders, old and new, stand beside it under their
-    hidden names. An error or Ctrl-C there puts the old folder back.
+    With `force` old and new exchange their names in one step where the system can (Linux), and the old one is
+    deleted last. Elsewhere the old folder is renamed to a hidden name first. Those are two steps: killed
+    between them, the place is empty and both folders, old and new, stand beside it under their hidden names;
+    an error or Ctrl-C there puts the old folder back.
     """
     place = check_place(folder, force)
     with explained(folder, WHAT), _hidden(place) as hidden:
@@ -119,7 +124,23 @@ def _make_beside(place: Path, kind: str) -> Path:
 def _move_in(hidden: Path, place: Path, force: bool) -> None:
     if not (force and place.exists()):
         os.rename(hidden, place)
-        return
+    elif not _exchanged(hidden, place):
+        _put_aside(hidden, place)
+
+
+def _exchanged(first: Path, second: Path) -> bool:
+    """Let two folders exchange their names in one step; False where the system cannot.
+
+    Linux only: renameat2(2), flag RENAME_EXCHANGE; some file systems refuse it.
+    """
+    if sys.platform != "linux":
+        return False
+    call = getattr(ctypes.CDLL(None), "renameat2", None)
+    paths = os.fsencode(first), os.fsencode(second)
+    return call is not None and call(_HERE, paths[0], _HERE, paths[1], _RENAME_EXCHANGE) == 0
+
+
+def _put_aside(hidden: Path, place: Path) -> None:
     old = _make_beside(place, "old")
     try:
         os.rename(place, old)  # a rename may take the place of an empty folder
