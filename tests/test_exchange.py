@@ -3,6 +3,7 @@
 import dataclasses
 import math
 import re
+import shutil
 import subprocess
 import sys
 import xml.etree.ElementTree as ET
@@ -316,3 +317,31 @@ def test_writing_loads_no_meshio():
     code = "import cupfem, sys; cupfem.write_fields; print({'meshio', 'matplotlib'} & set(sys.modules))"
     done = subprocess.run([sys.executable, "-c", code], capture_output=True, text=True, check=True, cwd=ROOT)
     assert done.stdout.strip() == "set()"
+
+
+# -- the pages -----------------------------------------------------------------------------------------------
+
+
+@pytest.mark.parametrize("page", ["fields", "run_folder"])
+def test_the_examples_of_the_pages_run(tmp_path, monkeypatch, page):
+    text = (ROOT / "docs" / "howto" / f"{page}.md").read_text(encoding="utf-8")
+    (example,) = re.findall(r"^```python\n(.*?)^```$", text, re.MULTILINE | re.DOTALL)
+    shutil.copytree(ROOT / "geometries", tmp_path / "geometries")
+    monkeypatch.chdir(tmp_path)
+    exec(compile(example, page, "exec"), {})
+    assert any(tmp_path.glob("**/fields.pvd"))
+
+
+def test_the_page_names_every_array(written):
+    """Layers apart, which the cup file names."""
+    grid = read(listed(written)[0][1])
+    data = [grid.GetPointData(), grid.GetCellData(), grid.GetFieldData()]
+    names = {part.GetAbstractArray(n).GetName() for part in data for n in range(part.GetNumberOfArrays())}
+    table = [
+        line.split("|")[1]
+        for line in (ROOT / "docs/howto/fields.md").read_text(encoding="utf-8").splitlines()
+        if line.startswith("| ")
+    ]
+    told = set(re.findall(r"`(\w+)`", " ".join(table)))
+    assert names - told == {"outer"}
+    assert told <= names
