@@ -1,0 +1,6 @@
+"""The command line: parse, call, print. Whatever is heavy is imported by the command that needs it."""
+
+from cupfem.cli.app import app
+from cupfem.cli.status import main
+
+__all__ = ["app", "main"]

@@ -1,0 +1,111 @@
+"""Commands and their options. Nothing heavy is imported here, so that ``--help`` is quick."""
+
+from __future__ import annotations
+
+from typing import Annotated, Literal
+
+import typer
+
+EXAMPLE = "cupfem pour geometries/double_wall.toml geometries/serving_galley_tea.toml --out tea --units us"
+WORDS = {
+    "cup file": "the drawing: outline, layers from inside to outside, base",
+    "serving file": "what happens to the cup: drink, room, sips, target",
+    "level": "height of the drink's surface above the table",
+    "layer, gap, sleeve": "one ply of the wall; a layer of air; a layer around a part of the height",
+    "recess, heel": "underside of the base above the table; what the wall stands on",
+    "film coefficient": "heat flux through the air or the drink at a surface, per kelvin",
+    "station": "a height at which a series in time is kept",
+    "free wall": "the outer wall where no finger touches it: its temperature is not a hold time",
+}
+GLOSSARY = "\n\n".join(
+    ["[bold]Words[/bold]", *(f"[bold]{word}[/bold]: {meaning}" for word, meaning in WORDS.items())]
+)
+
+CupFile = Annotated[str, typer.Argument(metavar="CUP", help="Cup file, such as geometries/double_wall.toml.")]
+Out = Annotated[
+    str | None,
+    typer.Option(metavar="DIR", help="Folder to write; left out: a new numbered one in the current folder."),
+]
+Force = Annotated[bool, typer.Option("--force", help="Replace the folder of an earlier run.")]
+Quiet = Annotated[bool, typer.Option("--quiet", help="Print nothing but the name of the folder.")]
+Fineness = Annotated[
+    float, typer.Option(metavar="NUMBER", help="Cells per length relative to the default, 0.25 to 16.")
+]
+UnitSystem = Annotated[
+    Literal["si", "us"], typer.Option(help="us: degF, inches, fluid ounces in tables and pictures.")
+]
+
+app = typer.Typer(
+    name="cupfem",
+    help="From a cup's drawing: how hot its outside gets, how warm the drink stays, where the heat goes.",
+    epilog=f"{GLOSSARY}\n\n[bold]Example[/bold]: {EXAMPLE}",
+    add_completion=False,
+    rich_markup_mode="rich",
+    pretty_exceptions_enable=False,
+)
+
+
+def _version(wanted: bool) -> None:
+    if wanted:
+        from importlib.metadata import version
+
+        typer.echo(f"cupfem {version('cupfem')}")
+        raise typer.Exit
+
+
+@app.callback()
+def common(
+    version: Annotated[
+        bool, typer.Option("--version", callback=_version, is_eager=True, help="Print the version.")
+    ] = False,
+) -> None:
+    """Take options that stand before the command."""
+
+
+@app.command(epilog="Example: cupfem draw geometries/double_wall.toml")
+def draw(
+    cup: CupFile,
+    out: Out = None,
+    force: Force = False,
+    quiet: Quiet = False,
+    fineness: Fineness = 1.0,
+    units: UnitSystem = "si",
+) -> None:
+    """Check a cup file: picture of the section, capacity, board mass, layer volumes, mesh quality."""
+    from cupfem.cli.jobs import draw_cup
+
+    draw_cup(cup, out, force=force, quiet=quiet, fineness=fineness, units=units)
+
+
+@app.command(epilog='Example: cupfem pour geometries/double_wall.toml --duration "5 min"')
+def pour(
+    cup: CupFile,
+    serving: Annotated[
+        str | None, typer.Argument(metavar="SERVING", help="Serving file; left out: the default serving.")
+    ] = None,
+    out: Out = None,
+    force: Force = False,
+    quiet: Quiet = False,
+    duration: Annotated[
+        str | None, typer.Option(metavar="TIME", help='Instead of the serving\'s, such as "5 min".')
+    ] = None,
+    fineness: Fineness = 1.0,
+    units: UnitSystem = "si",
+) -> None:
+    """Run a serving: verdict, table, pictures, series and fields, in one folder."""
+    from cupfem.cli.jobs import pour_cup
+
+    pour_cup(cup, serving, out, force=force, quiet=quiet, duration=duration, fineness=fineness, units=units)
+
+
+@app.command(epilog='Example: cupfem materials "cupstock board"')
+def materials(
+    name: Annotated[
+        str | None, typer.Argument(metavar="NAME", help="One material in full; left out: all of them.")
+    ] = None,
+    units: UnitSystem = "si",
+) -> None:
+    """Print the material library: each value with its range, its mark and its source."""
+    from cupfem.cli.library import print_materials
+
+    print_materials(name, units)

@@ -1,0 +1,63 @@
+"""What the commands print."""
+
+from __future__ import annotations
+
+from collections.abc import Iterable, Sequence
+from pathlib import Path
+
+from rich.console import Console
+from rich.markup import escape
+from rich.table import Table
+
+from cupfem.drawing import Drawing
+from cupfem.quantities import Units
+from cupfem.run import CAUTION, FREE_WALL, Run, headline
+
+
+def show_run(console: Console, run: Run, units: Units) -> None:
+    """Headline figures, verdict, the two uncertainties apart, defaults and the caution."""
+    console.print(f"[bold]{escape(run.cup.title)} - {escape(run.serving.title)}[/bold]")
+    console.print(f"[italic]{FREE_WALL}[/italic]\n")
+    console.print(_table(headline.rows(run, run.figures(), units)))
+    for verdict in headline.verdicts(run):
+        colour = "green" if verdict.passed else "red"
+        console.print(f"[bold {colour}]{escape(headline.verdict_line(verdict, units))}[/bold {colour}]")
+    _section(console, "Uncertainty", headline.uncertainty_lines(run))
+    _section(console, "Correlations outside their range", run.ranges)
+    _section(console, "Defaults used", ["; ".join(run.defaults)] if run.defaults else [])
+    console.print(f"\n[bold]Caution[/bold]\n{CAUTION}")
+
+
+def show_drawing(console: Console, drawing: Drawing, units: Units) -> None:
+    """Capacity and mass, layers, mesh quality, volume against level."""
+    heads = ("layer", "material", "thickness", "volume", "mass", "cells across")
+    console.print(f"[bold]{escape(drawing.cup.title)}[/bold]\n")
+    console.print(_table(drawing.headline_rows(units)))
+    for rows, titles in (
+        (drawing.part_rows(units), heads),
+        (drawing.quality_rows(), ()),
+        (drawing.fill_rows(units), ("level", "volume")),
+    ):
+        console.print()
+        console.print(_table(rows, titles))
+
+
+def show_folder(console: Console, folder: Path, quiet: bool) -> None:
+    """Where the files are; alone on its line where nothing else is printed, so that a script can read it."""
+    if not quiet:
+        console.print("\n[bold]Written to[/bold]")
+    console.print(escape(str(folder)), soft_wrap=True)
+
+
+def _table(rows: Iterable[Sequence[str]], heads: Sequence[str] = ()) -> Table:
+    table = Table(*heads, box=None, pad_edge=False, show_header=bool(heads), padding=(0, 2, 0, 0))
+    for row in rows:
+        table.add_row(*(escape(cell) for cell in row))
+    return table
+
+
+def _section(console: Console, title: str, lines: Sequence[str]) -> None:
+    if lines:
+        console.print(f"\n[bold]{title}[/bold]")
+    for line in lines:
+        console.print(escape(line))
