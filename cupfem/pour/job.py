@@ -3,6 +3,7 @@
 from __future__ import annotations
 
 from collections.abc import Callable, Mapping
+from dataclasses import replace
 
 import numpy as np
 from numpy.typing import NDArray
@@ -64,7 +65,7 @@ def pour(
     """
     serving = serving or Serving()
     problem = build(cup, serving, fineness, films)
-    run = _march(problem, fineness, tolerance, progress)
+    run = replace(_march(problem, fineness, tolerance, progress), films=dict(films or {}))
     if not companion:
         return run
     coarse = _march(build(cup, serving, fineness * COMPANION, films), fineness * COMPANION, tolerance, None)

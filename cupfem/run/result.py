@@ -14,6 +14,7 @@ from numpy.typing import NDArray
 
 from cupfem.cup import Cup
 from cupfem.errors import InputError
+from cupfem.films import Film
 from cupfem.meridian import Meridian
 from cupfem.mesh import SectionMesh
 from cupfem.quantities import Units
@@ -115,6 +116,8 @@ class Run:
     space_errors: Mapping[str, float] = field(default_factory=dict)
     defaults: tuple[str, ...] = ()
     ranges: tuple[str, ...] = ()
+    films: Mapping[str, Film] = field(default_factory=dict)
+    """Films that Python gave instead of the serving's, by edge."""
 
     @property
     def time(self) -> Floats:

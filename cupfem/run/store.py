@@ -3,13 +3,16 @@
 from __future__ import annotations
 
 import json
+from dataclasses import dataclass
 from pathlib import Path
+from typing import ClassVar
 
 import numpy as np
 from numpy.typing import NDArray
 
 from cupfem.cup import Cup
 from cupfem.errors import InputError
+from cupfem.films import Values
 from cupfem.inputs import resolved_toml
 from cupfem.meridian import build as build_meridian
 from cupfem.mesh import build as build_mesh
@@ -20,6 +23,24 @@ Floats = NDArray[np.float64]
 
 SERIES = ("time", "drink_temperature", "drink_level", "drink_mass", "outer_temperature", "inner_temperature")
 TOLD = ("fineness", "tolerance", "time_error")
+
+
+@dataclass(frozen=True)
+class LostFilm:
+    """A film that Python gave to the run; a folder cannot keep it."""
+
+    edge: str
+    label: ClassVar[str] = "own film"
+    source: ClassVar[str] = "given in Python"
+
+    def heat_flux(self, surface: Values, surroundings: Values, height: Values, time: float) -> Values:
+        """Refuse: InputError."""
+        raise InputError(
+            f"films.{self.edge}",
+            None,
+            "given in Python, and a run folder cannot keep it",
+            "pour again with the same film and use that run",
+        )
 
 
 def save_run(run: Run, folder: str | Path) -> None:
@@ -60,6 +81,7 @@ def load_run(folder: str | Path) -> Run:
         space_errors=told["space_errors"],
         defaults=tuple(told["defaults"]),
         ranges=tuple(told["ranges"]),
+        films={edge: LostFilm(edge) for edge in told["films"]},
         **{name: told[name] for name in TOLD},
     )
 
@@ -81,5 +103,5 @@ def _arrays(run: Run) -> dict[str, Floats]:
         "to_drink": ledger.to_drink,
     }
     told |= {"counters": dict(run.counters), "space_errors": dict(run.space_errors)}
-    told |= {"defaults": list(run.defaults), "ranges": list(run.ranges)}
+    told |= {"defaults": list(run.defaults), "ranges": list(run.ranges), "films": list(run.films)}
     return arrays | {"told": np.array(json.dumps(told))}
