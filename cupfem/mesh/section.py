@@ -7,12 +7,15 @@ from functools import cached_property
 
 import numpy as np
 from numpy.typing import NDArray
-from skfem import Basis, ElementQuad1, ElementQuad2, MeshQuad
+from skfem import Basis, ElementQuad1, ElementQuad2, ElementTriP1, ElementTriP2, MeshQuad, MeshTri
 
 from cupfem.errors import InputError
 
 Floats = NDArray[np.float64]
 Ints = NDArray[np.int_]
+
+_ELEMENTS = {3: (ElementTriP1, ElementTriP2), 4: (ElementQuad1, ElementQuad2)}
+"""Linear and quadratic element of a cell with that many corners."""
 
 
 @dataclass(frozen=True, eq=False)
@@ -45,7 +48,7 @@ class SectionMesh:
     Attributes
     ----------
     grid:
-        The scikit-fem mesh (vertices and cells).
+        The scikit-fem mesh (vertices and cells): quadrilaterals, or triangles from another program.
     element_dofs:
         `[local, element]`, numbers of the unknowns.
     points:
@@ -60,7 +63,7 @@ class SectionMesh:
         `[2, dof]`, s along the wall and n across it [m]; NaN in the base.
     """
 
-    grid: MeshQuad
+    grid: MeshQuad | MeshTri
     order: int
     element_dofs: Ints
     points: Floats
@@ -89,8 +92,8 @@ class SectionMesh:
 
     def basis(self, elements: Ints | None = None) -> Basis:
         """scikit-fem basis; its own numbering, see `element_dofs` for ours."""
-        element = ElementQuad2() if self.order == 2 else ElementQuad1()
-        return Basis(self.grid, element, intorder=2 * self.order + 1, elements=elements)
+        element = _ELEMENTS[len(self.grid.t)][self.order - 1]
+        return Basis(self.grid, element(), intorder=2 * self.order + 1, elements=elements)
 
     def edge(self, name: str) -> Ints:
         """Facets of a named edge; an unknown or empty edge is an error."""
