@@ -181,10 +181,8 @@ SERVINGS = [
     ('duration = "10 m"', 'duration: "10 m": "m" is a unit of length, not of time'),
     ('titel = "x"', 'titel: unknown key; did you mean "title"?'),
     # the format knows these, but nothing reads them yet
-    ('[[pad]]\nheight = "55 mm"', "line 1: pad: not supported yet; leave it out"),
     ('[lid]\nsip_hole = "1.2 cm^2"', "lid: not supported yet"),
-    ("[grip]", "grip: not supported yet"),
-    ('[target]\nhold_time = "60 s"', "target.hold_time: not supported yet"),
+    ("[grip]", "line 1: grip: not supported yet; leave it out"),
     ("handle = true", "handle: not axisymmetric"),
     # drink
     ("drink = 3", "drink: 3: not a table"),
@@ -272,8 +270,24 @@ SERVINGS = [
         '[[event]]\ndrinking = "5 cl"\nsip = "1 ml"',
         "event.1.sip: unknown key; the keys here are drinking, from, to",
     ),
+    # pads
+    ('[[pad]]\nwidth = "15 mm"', 'pad.1.height: missing; write height = "55 mm"'),
+    ('[[pad]]\nheight = "5 cm"\nshare = 0.0', "pad.1.share: 0.0: must be more than zero"),
+    ('[[pad]]\nheight = "5 cm"\nskin = "thum"', 'pad.1.skin: "thum": the names here are'),
+    (
+        '[[pad]]\nheight = "5 cm"\npick_up = "1 min"\nrelease = "30 s"',
+        'pad.1.release: "30 s": not after the pick',
+    ),
+    (
+        '[[pad]]\nheight = "5 cm"\npick_up = "10 min"',
+        'pad.1.pick_up: "10 min": not before the end of the serving',
+    ),
+    (
+        2 * '[[pad]]\nheight = "5 cm"\nshare = 0.6\n',
+        "pad: 1.2: the pads held at 60 s cover more than the circ",
+    ),
     # target
-    ("[target]", "target.drink_above: nothing to meet; write drink_above or wall_below"),
+    ("[target]", "target.drink_above: nothing to meet; write drink_above, wall_below or hold"),
     ('[target]\ndrink_above = "60 degC"\nbetween = ["1 cm", "2 cm"]', "target.between: would change nothing"),
     (
         '[target]\nwall_below = "60 degC"\nbetween = ["2 cm", "1 cm"]',
@@ -373,7 +387,7 @@ def test_a_byte_order_mark_is_no_error(tmp_path):
 def test_python_is_refused_like_a_file():
     assert refusal(lambda: Serving(drink=Drink(temperature=85.0))).startswith("drink.temperature: 85.0: ")
     assert refusal(lambda: Serving(drink={"temperature": "20 C"})).startswith('drink.temperature: "20 C": ')
-    assert refusal(lambda: Serving(pad=3)) == "pad: not supported yet; leave it out"
+    assert refusal(lambda: Serving(grip=3)) == "grip: not supported yet; leave it out"
     assert refusal(lambda: Drink(colour="green")) == (
         "drink.colour: unknown key; "
         "the keys here are kind, density, specific_heat, temperature, level, volume"
@@ -381,5 +395,5 @@ def test_python_is_refused_like_a_file():
 
 
 def test_refusals_are_errors_of_the_package():
-    with pytest.raises(CupfemError, match="pad"):
-        Serving(pad=3)
+    with pytest.raises(CupfemError, match="grip"):
+        Serving(grip=3)

@@ -14,6 +14,7 @@ from cupfem.serving.model import (
     load_serving,
     serving_schema,
 )
+from cupfem.serving.pads import Pad
 from cupfem.serving.tables import Drink, Drinking, Room, Sip, Start, Target
 
 __all__ = [
@@ -27,6 +28,7 @@ __all__ = [
     "Films",
     "FixedFilm",
     "NamedFilm",
+    "Pad",
     "Room",
     "Serving",
     "Sip",

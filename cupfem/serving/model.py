@@ -13,6 +13,7 @@ from cupfem.errors import InputError
 from cupfem.inputs import InputFile, Positive, json_schema, refused, within
 from cupfem.quantities import Time, format_quantity
 from cupfem.serving.films import Films
+from cupfem.serving.pads import Pad, check_places, check_times
 from cupfem.serving.tables import Drink, Drinking, Event, Room, Sip, Start, Target
 
 FREEBOARD = 10e-3  # m; from brim to level where the file tells neither level nor volume
@@ -34,7 +35,7 @@ class Space(Protocol):
 class Serving(InputFile):
     """What happens to a cup from the pour on."""
 
-    not_yet: ClassVar[tuple[str, ...]] = ("pad", "lid", "grip", "altitude")
+    not_yet: ClassVar[tuple[str, ...]] = ("lid", "grip", "altitude")
     never: ClassVar[Mapping[str, str]] = {"handle": "not axisymmetric: a handle cannot be modelled"}
 
     title: str = "Serving"
@@ -49,6 +50,8 @@ class Serving(InputFile):
     """The state before the pour."""
     event: tuple[Event, ...] = ()
     """What is drunk when."""
+    pad: tuple[Pad, ...] = ()
+    """Fingers on the wall."""
     target: Target | None = None
     """What has to be met."""
     films: Films = Field(default_factory=Films)
@@ -81,6 +84,7 @@ class Serving(InputFile):
         """Times within the serving at which something jumps [s], rising."""
         times = {start for start, _ in self.room.steps} | {time for time, _ in self.sips()}
         times |= {time for _, start, end in self.steady_drinking() for time in (start, end)}
+        times |= {time for pad in self.pad for time in (pad.pick_up, pad.until(self.duration))}
         return tuple(sorted(time for time in times if 0.0 < time < self.duration))
 
     def idle(self) -> dict[str, str]:
@@ -98,6 +102,7 @@ class Serving(InputFile):
         _check_times(self)
         _check_drink(self)
         _check_room(self)
+        check_times(self.pad, self.duration)
         return self
 
 
@@ -126,6 +131,7 @@ def check(cup: Space, serving: Serving) -> None:
     """
     _check_fill(cup, serving.drink)
     _check_drunk(fill_volume(cup, serving), serving)
+    check_places(cup, serving.pad)
     between = serving.target.between if serving.target else None
     if between is not None and between[1] > cup.height:
         why = f"above the brim at {_mm(cup.height)}"

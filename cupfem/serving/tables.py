@@ -181,24 +181,27 @@ class Target(Table):
     """The `[target]` table: what the serving has to meet, from the pour until `until`."""
 
     place: ClassVar[str] = "target"
-    not_yet: ClassVar[tuple[str, ...]] = ("hold_time",)
     left_out: ClassVar[Mapping[str, str]] = {"until": "the end of the serving"}
 
     drink_above: Temperature | None = None
     """The drink stays at or above this."""
+    hold_time: Annotated[Time, Positive] | None = None
+    """A finger can stay on the wall at least this long, whenever it is picked up."""
     wall_below: Temperature | None = None
     """The free outside of the wall stays at or below this."""
     between: tuple[Annotated[Length, NotNegative], Annotated[Length, Positive]] | None = None
-    """Heights between which wall_below holds; left out: the whole outside."""
+    """Heights between which wall_below and hold_time hold; left out: the whole outside, and for hold_time the
+    grip band."""
     until: Annotated[Time, Positive] | None = None
     """Left out: the end of the serving."""
 
     @model_validator(mode="after")
     def _consistent(self) -> Self:
-        if self.drink_above is None and self.wall_below is None:
-            raise refused("nothing to meet", "write drink_above or wall_below", "drink_above")
-        if self.between is not None and self.wall_below is None:
-            raise refused("would change nothing: it belongs to wall_below", "write wall_below too", "between")
+        if self.drink_above is None and self.wall_below is None and self.hold_time is None:
+            raise refused("nothing to meet", "write drink_above, wall_below or hold_time", "drink_above")
+        if self.between is not None and self.wall_below is None and self.hold_time is None:
+            why = "would change nothing: it belongs to wall_below and hold_time"
+            raise refused(why, "write one of them too", "between")
         if self.between is not None and self.between[0] >= self.between[1]:
             raise refused("the first height is not below the second", "write the lower one first", "between")
         return self
