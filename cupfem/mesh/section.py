@@ -7,7 +7,7 @@ from functools import cached_property
 
 import numpy as np
 from numpy.typing import NDArray
-from skfem import Basis, ElementQuad1, ElementQuad2, ElementTriP1, ElementTriP2, MeshQuad, MeshTri
+from skfem import Basis, Element, ElementQuad1, ElementQuad2, ElementTriP1, ElementTriP2, MeshQuad, MeshTri
 
 from cupfem.errors import InputError
 
@@ -92,8 +92,9 @@ class SectionMesh:
 
     def basis(self, elements: Ints | None = None) -> Basis:
         """scikit-fem basis; its own numbering, see `element_dofs` for ours."""
-        element = _ELEMENTS[len(self.grid.t)][self.order - 1]
-        return Basis(self.grid, element(), intorder=2 * self.order + 1, elements=elements)
+        return Basis(
+            self.grid, element_of(self.grid, self.order), intorder=2 * self.order + 1, elements=elements
+        )
 
     def edge(self, name: str) -> Ints:
         """Facets of a named edge; an unknown or empty edge is an error."""
@@ -101,3 +102,8 @@ class SectionMesh:
             known = ", ".join(sorted(key for key, value in self.edges.items() if value.shape[1]))
             raise InputError("edge", name, "the mesh has no facets of that name", f"one of: {known}")
         return self.edges[name]
+
+
+def element_of(grid: MeshQuad | MeshTri, order: int) -> Element:
+    """The Lagrange element of a grid."""
+    return _ELEMENTS[len(grid.t)][order - 1]()
