@@ -2,16 +2,11 @@
 
 Pure geometry, no mesh. Heights are z on the wall's inside face, above the table; thickness is measured along
 the wall's normal.
-
-Volumes and areas of a profile made of straight pieces are exact sums over frusta (Pappus-Guldin theorem; any
-handbook of
-geometry, e.g. Bronshtein and Semendyayev, Handbook of Mathematics, section on bodies of revolution).
 """
 
 from __future__ import annotations
 
 import math
-from bisect import bisect_right
 from collections.abc import Callable
 from dataclasses import dataclass, field
 from functools import cached_property
@@ -19,8 +14,10 @@ from functools import cached_property
 import numpy as np
 from numpy.typing import ArrayLike, NDArray
 
-from cupfem.cup import Cup
+from cupfem.cup import Cup, Layer, Profile
 from cupfem.errors import InputError
+from cupfem.fluids import air_conductivity
+from cupfem.gaps import exchange_factor, radiation_conductance
 from cupfem.materials import Material
 
 Floats = NDArray[np.float64]
@@ -29,77 +26,43 @@ Conductance = Callable[[Floats], Floats]
 
 MINIMUM_THICKNESS = 1e-9
 """A layer thinner than this [m] is absent."""
+FIT_TEMPERATURE = 50.0
+"""Temperature [degC] at which air and radiation of a loose fit are taken."""
 
 
 @dataclass(frozen=True, eq=False)
-class Profile:
-    """Inside face of the wall as a polyline that rises: `height[p]` and `radius[p]`, both in metres."""
+class Rings:
+    """Ridges: heights of their feet on the inside face `[ring]` [m], and their cross-section.
 
-    height: Floats
-    radius: Floats
+    `flank_run` [m] along the wall is what each flank takes of the foot (the cells lean with the flanks);
+    `half_crest` [m] is half the crest's width, `crest_radius` [m] that of a rounded crest (infinite: flat).
+    """
 
-    def __post_init__(self) -> None:
-        if np.any(np.diff(self.height) <= 0):
-            raise InputError(
-                "inside profile", None, "its heights must rise", "list the points from the table up"
-            )
+    low: Floats
+    high: Floats
+    flank_run: float = 0.0
+    half_crest: float = 0.0
+    crest_radius: float = np.inf
 
-    def radius_at(self, height: ArrayLike) -> Floats:
-        """Inside radius [m] at heights [m]."""
-        return np.asarray(np.interp(np.asarray(height, dtype=float), self.height, self.radius))
+    def place(self, height: Floats) -> Floats:
+        """Place across the ring at heights, -1 and 1 at the ends of its foot; NaN between the rings."""
+        ring = np.clip(np.searchsorted(self.low, height + 1e-12, side="right") - 1, 0, len(self.low) - 1)
+        low, high = self.low[ring], self.high[ring]
+        inside = (height >= low - 1e-12) & (height <= high + 1e-12)
+        return np.where(inside, (2.0 * height - low - high) / (high - low), np.nan)
 
-    def arc_length_at(self, height: ArrayLike) -> Floats:
-        """Length along the inside face from the table [m]."""
-        pieces = np.hypot(np.diff(self.height), np.diff(self.radius))
-        reached = np.concatenate([[0.0], np.cumsum(pieces)])
-        return np.asarray(np.interp(np.asarray(height, dtype=float), self.height, reached))
+    def thickness(self, height: Floats, full: float) -> Floats:
+        """Height of the ridge [m] over its foot; none between the rings."""
+        place = self.place(height)
+        drop = np.zeros(np.shape(height))
+        if np.isfinite(self.crest_radius):
+            sine = self.half_crest / self.crest_radius * np.nan_to_num(place)
+            drop = self.crest_radius * (1.0 - np.sqrt(1.0 - sine * sine))
+        return np.where(np.isnan(place), 0.0, full - drop)
 
-    def normal_at(self, height: ArrayLike) -> Floats:
-        """Outward normals `[2, p]` (r, z); at a corner of the profile the mean of both sides."""
-        slopes = np.diff(self.radius) / np.diff(self.height)
-        z = np.asarray(height, dtype=float)
-        last = len(slopes) - 1
-        above = np.clip(np.searchsorted(self.height, z + 1e-12, side="right") - 1, 0, last)
-        below = np.clip(np.searchsorted(self.height, z - 1e-12, side="right") - 1, 0, last)
-        angle = 0.5 * (np.arctan(slopes[above]) + np.arctan(slopes[below]))
-        return np.array([np.cos(angle), -np.sin(angle)])
-
-    @cached_property
-    def _pieces(self) -> tuple[list[float], list[float], list[float], list[float]]:
-        """Heights, radii, slopes of the straight pieces, and volumes below their lower ends, as plain floats:
-        the level is asked thousands of times in a run."""
-        slopes = np.diff(self.radius) / np.diff(self.height)
-        volumes = np.cumsum(_frustum(np.diff(self.height), self.radius[:-1], self.radius[1:]))
-        return self.height.tolist(), self.radius.tolist(), slopes.tolist(), [0.0, *volumes.tolist()]
-
-    def radius_of(self, height: float) -> float:
-        """Inside radius [m] at one height [m]."""
-        heights, radii, slopes, _ = self._pieces
-        z = min(max(height, heights[0]), heights[-1])
-        piece = min(bisect_right(heights, z) - 1, len(slopes) - 1)
-        return radii[piece] + slopes[piece] * (z - heights[piece])
-
-    def volume_below(self, height: float) -> float:
-        """Inside volume [m3] between the table and a height [m]."""
-        heights, radii, slopes, volumes = self._pieces
-        z = min(max(height, heights[0]), heights[-1])
-        piece = min(bisect_right(heights, z) - 1, len(slopes) - 1)
-        rise, radius = z - heights[piece], radii[piece]
-        upper = radius + slopes[piece] * rise
-        return volumes[piece] + math.pi / 3.0 * rise * (radius * radius + radius * upper + upper * upper)
-
-    def height_of_volume(self, volume: float) -> float:
-        """Height [m] below which the inside volume [m3] is found; the inverse of `volume_below` to rounding.
-
-        In a frustum r_upper^3 = r^3 + 3 m V / pi, and V = pi/3 x (r^2 + r r_upper + r_upper^2) gives x
-        without the difference of the two radii, so that it holds for a cylinder (m = 0) too.
-        """
-        heights, radii, slopes, volumes = self._pieces
-        piece = min(max(bisect_right(volumes, volume) - 1, 0), len(slopes) - 1)
-        radius, part = radii[piece], 3.0 / math.pi * (volume - volumes[piece])
-        upper = math.cbrt(radius**3 + slopes[piece] * part)
-        squares = radius * radius + radius * upper + upper * upper
-        return heights[piece] + (part / squares if squares > 0.0 else 0.0)
+    def shift(self, height: Floats) -> Floats:
+        """How far along the wall the crest's points lie from those of the foot [m]."""
+        return np.nan_to_num(-self.flank_run * self.place(height))
 
 
 @dataclass(frozen=True, eq=False)
@@ -109,6 +72,8 @@ class LayerBand:
     `blend` is the length over which the layers outside move in where this layer stops; zero where nothing
     lies outside. `inner_conductance` [W/(m2 K)] couples the layer to what is inside it, over its whole
     reach: a number, or a function of heights on the inside face [m]; infinite where it is glued.
+    `along` gives heights and thicknesses instead of one thickness; `spans` are the heights of hollow rings
+    of which the layer consists (each with the blends), `rings` those of solid ridges.
     """
 
     name: str
@@ -120,6 +85,9 @@ class LayerBand:
     blend_high: float = 0.0
     closing_conductance: float = np.inf
     inner_conductance: float | Conductance = np.inf
+    along: tuple[Floats, Floats] | None = None
+    spans: tuple[tuple[float, float], ...] = ()
+    rings: Rings | None = None
 
     @property
     def loose(self) -> bool:
@@ -132,20 +100,70 @@ class LayerBand:
         given = self.inner_conductance
         return np.broadcast_to(np.asarray(given(z) if callable(given) else given, dtype=float), z.shape)
 
+    @property
+    def parts(self) -> tuple[tuple[float, float], ...]:
+        """Heights [m] between which the layer has its full thickness."""
+        return self.spans or ((self.low, self.high),)
+
     def thickness_at(self, height: ArrayLike) -> Floats:
         """Thickness [m] at heights; over a blend it falls to nothing along a smooth step (no kink at either
         end)."""
         z = np.asarray(height, dtype=float)
-        below = _smooth_step((z - (self.low - self.blend_low)) / max(self.blend_low, 1e-300))
-        above = _smooth_step(((self.high + self.blend_high) - z) / max(self.blend_high, 1e-300))
-        inside_low = np.where(z >= self.low - 1e-12, 1.0, below if self.blend_low else 0.0)
-        inside_high = np.where(z <= self.high + 1e-12, 1.0, above if self.blend_high else 0.0)
-        return np.asarray(self.thickness * inside_low * inside_high)
+        if self.rings is not None:
+            return self.rings.thickness(z, self.thickness)
+        full = self.thickness if self.along is None else np.interp(z, *self.along)
+        return np.asarray(full * sum(self._presence(z, low, high) for low, high in self.parts))
+
+    def _presence(self, z: Floats, low: float, high: float) -> Floats:
+        below = _smooth_step((z - (low - self.blend_low)) / max(self.blend_low, 1e-300))
+        above = _smooth_step(((high + self.blend_high) - z) / max(self.blend_high, 1e-300))
+        inside_low = np.where(z >= low - 1e-12, 1.0, below if self.blend_low else 0.0)
+        inside_high = np.where(z <= high + 1e-12, 1.0, above if self.blend_high else 0.0)
+        return np.asarray(inside_low * inside_high)
+
+    def shift_at(self, height: ArrayLike) -> Floats:
+        """How far along the wall the outer face's points lie from those of the inner face [m]."""
+        z = np.asarray(height, dtype=float)
+        return np.zeros(z.shape) if self.rings is None else self.rings.shift(z)
+
+    def is_full(self, height: Floats) -> NDArray[np.bool_]:
+        """Whether the layer itself is at heights, not the pocket that its blend leaves."""
+        inside = [(height > low) & (height < high) for low, high in self.parts]
+        return np.asarray(np.any(inside, axis=0))
 
     @property
     def reach(self) -> tuple[float, float]:
         """Heights [m] between which the layer or its tapering pocket is there."""
         return self.low - self.blend_low, self.high + self.blend_high
+
+    def breaks(self) -> Floats:
+        """Heights [m] at which the layer changes."""
+        if self.rings is not None:
+            return np.concatenate([self.rings.low, self.rings.high])
+        ends = [(low - self.blend_low, low, high, high + self.blend_high) for low, high in self.parts]
+        corners = np.zeros(0) if self.along is None else self.along[0]
+        inside = (corners > self.low) & (corners < self.high)
+        return np.concatenate([np.ravel(ends), corners[inside]])
+
+
+@dataclass(frozen=True)
+class LooseFit:
+    """Conductance [W/(m2 K)] across air whose thickness varies from one end of a layer to the other.
+
+    k / (g + g0) + h_rad, where g0 is the thickness of air that gives the conductance where the faces touch
+    (g = 0). Air and radiation in parallel, as in `gaps`; g0: common practice for rough faces, no source.
+    """
+
+    touching: float
+    ends: tuple[float, float]
+    gap: tuple[float, float]
+    air_conductivity: float
+    radiation: float
+
+    def __call__(self, height: Floats) -> Floats:
+        gap = np.interp(height, self.ends, self.gap)
+        least = self.air_conductivity / (self.touching - self.radiation)
+        return np.asarray(self.air_conductivity / (gap + least) + self.radiation)
 
 
 @dataclass(frozen=True, eq=False)
@@ -220,9 +238,9 @@ class Meridian:
 
     def breaks(self) -> Floats:
         """Heights at which the section changes [m]: ends of layers and blends, base, table and brim."""
-        heights = [self.profile.height]
+        heights = [self.profile.corners]
         for layer in self.layers:
-            heights.append(np.array([*layer.reach, layer.low, layer.high]))
+            heights.append(layer.breaks())
         if self.base:
             heights.append(np.array([self.base.recess, self.base.top]))
         return _merge(np.concatenate(heights))
@@ -230,31 +248,19 @@ class Meridian:
 
 def build(cup: Cup) -> Meridian:
     """The half section of a cup file."""
-    height = cup.height
-    profile = Profile(np.array([0.0, height]), np.array([cup.inner_radius(0.0), cup.inner_radius(height)]))
-    ranges = [cup.layer_range(layer) for layer in cup.layer]
-    layers = tuple(_band(cup, index, ranges) for index in range(len(ranges)))
+    layers = tuple(_band(cup, index) for index in range(len(cup.layer)))
     base = None
     if cup.base_disc is not None:
         base = BaseDisc(cup.material(cup.base_disc.material), cup.base_disc.thickness, cup.base_disc.recess)
-    return Meridian(profile, layers, base, cup.title)
+    return Meridian(cup.profile, layers, base, cup.title)
 
 
-def _band(cup: Cup, index: int, ranges: list[tuple[float, float]]) -> LayerBand:
+def _band(cup: Cup, index: int) -> LayerBand:
     layer = cup.layer[index]
-    low, high = ranges[index]
-    outside = ranges[index + 1 :]
-    blend_low = layer.blend if any(r[0] < low - 1e-9 for r in outside) else 0.0
-    blend_high = layer.blend if any(r[1] > high + 1e-9 for r in outside) else 0.0
-    path = f"layer.{layer.name}"
-    if low - blend_low < -1e-9 or high + blend_high > cup.height + 1e-9:
-        raise InputError(
-            f"{path}.blend",
-            f"{layer.blend * 1e3:g} mm",
-            "the layers outside have no room to move in between the layer's end and the end of the wall",
-            f"leave {layer.blend * 1e3:g} mm of wall beyond `from` and `to`, or shorten `blend`",
-        )
-    conductance = np.inf if layer.contact is None else layer.contact
+    (low, high), (blend_low, blend_high) = cup.layer_range(layer), cup.blends(layer)
+    _check_room(cup, layer, low - blend_low, high + blend_high)
+    hollow = layer.ridge is not None and cup.is_gas(layer)
+    heights, values = np.array(layer.thickness_along).T if layer.thickness_along else (None, None)
     return LayerBand(
         layer.name,
         cup.material(layer.material),
@@ -263,8 +269,47 @@ def _band(cup: Cup, index: int, ranges: list[tuple[float, float]]) -> LayerBand:
         high,
         blend_low,
         blend_high,
-        conductance,
-        np.inf if layer.fit is None else layer.fit,
+        np.inf if layer.contact is None else layer.contact,
+        _fit(cup, index),
+        None if heights is None or values is None else (heights, values),
+        cup.rings(layer) if hollow else (),
+        None if hollow else _rings(cup, layer),
+    )
+
+
+def _check_room(cup: Cup, layer: Layer, low: float, high: float) -> None:
+    if low < -1e-9 or high > cup.height + 1e-9:
+        raise InputError(
+            f"layer.{layer.name}.blend",
+            f"{layer.blend * 1e3:g} mm",
+            "the layers outside have no room to move in between the layer's end and the end of the wall",
+            f"leave {layer.blend * 1e3:g} mm of wall beyond `from` and `to`, or shorten `blend`",
+        )
+
+
+def _rings(cup: Cup, layer: Layer) -> Rings | None:
+    ridge = layer.ridge
+    if ridge is None:
+        return None
+    low, high = np.array(cup.rings(layer)).T
+    radius = ridge.crest_radius if ridge.crest == "rounded" else np.inf
+    return Rings(low, high, ridge.flank_run, 0.5 * ridge.crest_width, radius)
+
+
+def _fit(cup: Cup, index: int) -> float | Conductance:
+    """Conductance of the inner face of a layer that lies loosely."""
+    layer = cup.layer[index]
+    if layer.fit is None:
+        return np.inf
+    if layer.fit_gap is None:
+        return layer.fit
+    low, high = cup.layer_range(layer)
+    stack = cup.stack(0.5 * (low + high))
+    inside = cup.emissivity(stack[stack.index(layer) - 1], "outer")
+    factor = exchange_factor(inside, cup.emissivity(layer, "inner"))
+    radiation = float(radiation_conductance(FIT_TEMPERATURE, FIT_TEMPERATURE, factor))
+    return LooseFit(
+        layer.fit, (low, high), layer.fit_gap, float(air_conductivity(FIT_TEMPERATURE)), radiation
     )
 
 
@@ -276,8 +321,3 @@ def _merge(heights: Floats, tolerance: float = 1e-9) -> Floats:
 def _smooth_step(x: Floats) -> Floats:
     x = np.clip(x, 0.0, 1.0)
     return np.asarray(x * x * (3.0 - 2.0 * x))
-
-
-def _frustum(height: ArrayLike, lower: ArrayLike, upper: ArrayLike) -> Floats:
-    lower, upper = np.asarray(lower), np.asarray(upper)
-    return np.asarray(np.pi / 3.0 * np.asarray(height) * (lower * lower + lower * upper + upper * upper))

@@ -84,13 +84,18 @@ class InputFile(Table):
     @classmethod
     def from_text(cls, text: str, source: str = "text") -> Self:
         """Read TOML text; `source` is what messages call it."""
-        data = toml.parse(text, source)
+        data = cls.prepared(toml.parse(text, source), Path(source).parent)
         try:
             return cls.from_data(data)
         except InputError as error:
             line = toml.line_of(error.what, toml.lines_of(text, data))
             where = f"{source}, line {line}" if line else source
             raise InputError(f"{where}: {error.what}", error.value, error.why, error.instead) from None
+
+    @classmethod
+    def prepared(cls, data: dict[str, Any], folder: Path) -> dict[str, Any]:
+        """The tables of a file before they are validated; `folder` is where it lies."""
+        return data
 
     @classmethod
     def from_data(cls, data: Mapping[str, Any]) -> Self:

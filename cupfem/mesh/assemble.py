@@ -38,7 +38,8 @@ class Assembler:
         self.vertices = wall.points()[:, station, line]
         self.keys = np.array([2.0 * station, 2.0 * line])
         arc = wall.meridian.profile.arc_length_at(wall.z)
-        self.wall_coordinates = np.array([arc[station], wall.offsets[station, line]])
+        along = arc[station] + wall.shifts[station, line]
+        self.wall_coordinates = np.array([along, wall.offsets[station, line]])
         cells, doubled = wall.nodes_across
         self.nodes_across = cells * self.order + 1 + doubled
 
@@ -55,7 +56,7 @@ class Assembler:
     def _layer_cells(self, index: int, layer: LayerBand) -> None:
         start, stop = int(self.wall.first_line[index]), int(self.wall.last_line[index])
         middle = 0.5 * (self.wall.z[:-1] + self.wall.z[1:])
-        body = (middle > layer.low) & (middle < layer.high)
+        body = layer.is_full(middle)
         if layer.material.kind == "gas":
             parts = {layer.name: self.wall.present[index]}
         else:
@@ -284,7 +285,7 @@ class Assembler:
 
     def _contact_pairs(self) -> list[tuple[Ints, Ints, float | Floats]]:
         """Pairs of vertices of the facets inside and outside of each contact, and its conductance."""
-        found = []
+        found: list[tuple[Ints, Ints, float | Floats]] = []
         middle = 0.5 * (self.wall.z[:-1] + self.wall.z[1:])
         for index, layer in enumerate(self.wall.meridian.layers):
             inside, start, stop = (

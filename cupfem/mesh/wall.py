@@ -18,6 +18,7 @@ STATION_SPACING = 1.25e-3
 """Length of a cell along the wall at fineness 1 [m]; the fin length of a board wall is about 2 mm."""
 BLEND_CELLS = 6
 BASE_CELLS = 2
+RING_CELLS = 4
 LEAST_CELLS_ACROSS = 6
 """Cells across the thinnest wall at fineness 1: below this, base and wall together would widen the band past
 3 x nodes across."""
@@ -32,13 +33,24 @@ def default_stations(meridian: Meridian, fineness: float = 1.0) -> Floats:
     cells = max(3, round(BLEND_CELLS * fineness))
     graded = 1.0 - (1.0 - np.arange(cells + 1) / cells) ** 2
     for layer in meridian.layers:
-        if layer.blend_high:
-            fixed.append(layer.high + layer.blend_high * graded)
-        if layer.blend_low:
-            fixed.append(layer.low - layer.blend_low * graded)
+        for low, high in layer.parts:
+            if layer.blend_high:
+                fixed.append(high + layer.blend_high * graded)
+            if layer.blend_low:
+                fixed.append(low - layer.blend_low * graded)
+        fixed += _ring_stations(layer, fineness)
     heights = np.sort(np.concatenate(fixed))
     heights = heights[np.concatenate([[True], np.diff(heights) > 1e-7])]
     return _subdivide(meridian, heights, fineness)
+
+
+def _ring_stations(layer: LayerBand, fineness: float) -> list[Floats]:
+    """Heights [m] across the feet of ridges."""
+    if layer.rings is None:
+        return []
+    cells = max(2, round(RING_CELLS * fineness))
+    pairs = zip(layer.rings.low, layer.rings.high, strict=True)
+    return [np.linspace(low, high, cells + 1) for low, high in pairs]
 
 
 def default_fractions(meridian: Meridian, fineness: float = 1.0) -> dict[str, Floats]:
@@ -94,11 +106,14 @@ class Wall:
         self.first_line, self.last_line = self._line_ranges()
         at_stations = np.array([layer.thickness_at(self.z) for layer in meridian.layers])
         self.thickness = np.where(at_stations > MINIMUM_THICKNESS, at_stations, 0.0)
-        self.present = np.minimum(self.thickness[:, :-1], self.thickness[:, 1:]) > 0.0
+        middle = 0.5 * (self.z[:-1] + self.z[1:])
+        between = np.array([layer.thickness_at(middle) for layer in meridian.layers]) > MINIMUM_THICKNESS
+        self.present = (np.minimum(self.thickness[:, :-1], self.thickness[:, 1:]) > 0.0) & between
         self.standing = np.zeros(self.thickness.shape, dtype=bool)
         self.standing[:, :-1] |= self.present
         self.standing[:, 1:] |= self.present
         self.offsets = self._offsets()
+        self.shifts = self._shifts()
         self.line = self._lines()
 
     @property
@@ -137,13 +152,23 @@ class Wall:
             offsets[:, start : start + len(fractions)] = inner[:, None] + thickness[:, None] * fractions
         return offsets
 
+    def _shifts(self) -> Floats:
+        """How far along the wall each line is moved from its station, `[station, line]`: cells lean with the
+        flanks of ridges."""
+        shifts = np.zeros((len(self.z), self.lines))
+        for index, (layer, fractions) in enumerate(zip(self.meridian.layers, self.fractions, strict=True)):
+            if layer.rings is not None:
+                along = layer.shift_at(self.z) * self.standing[index]
+                shifts[:, self.first_line[index] : self.last_line[index] + 1] += along[:, None] * fractions
+        return shifts
+
     def _inner_slope(self, index: int, arc: Floats) -> Floats:
-        """Slope of a layer's inner face against the inside face: only where the layers within are
-        blending."""
+        """Slope of a layer's inner face against the inside face: only where the layers within it blend or
+        vary along the wall."""
         slope = np.zeros(len(arc))
         for layer in self.meridian.layers[:index]:
-            if layer.blend_low or layer.blend_high:
-                step = 1e-4 * max(layer.blend_low, layer.blend_high)
+            if layer.blend_low or layer.blend_high or layer.along:
+                step = 1e-4 * max(layer.blend_low, layer.blend_high, 1e-4)
                 rise = layer.thickness_at(self.z + step) - layer.thickness_at(self.z - step)
                 run = self.meridian.profile.arc_length_at(
                     self.z + step
@@ -173,6 +198,9 @@ class Wall:
 
     def points(self) -> Floats:
         """`[2, station, line]`."""
-        normal = self.meridian.profile.normal_at(self.z)
-        inner = np.array([self.meridian.profile.radius_at(self.z), self.z])
-        return np.asarray(inner[:, :, None] + normal[:, :, None] * self.offsets)
+        profile = self.meridian.profile
+        normal, angle = profile.normal_at(self.z), profile.angle_at(self.z)
+        along = np.array([np.sin(angle), np.cos(angle)])
+        inner = np.array([profile.radius_at(self.z), self.z])
+        moved = normal[:, :, None] * self.offsets + along[:, :, None] * self.shifts
+        return np.asarray(inner[:, :, None] + moved)
