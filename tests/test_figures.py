@@ -5,14 +5,15 @@ from pathlib import Path
 import matplotlib
 import numpy as np
 import pytest
-from matplotlib.collections import LineCollection, PolyCollection
+from matplotlib.collections import TriMesh
 from matplotlib.contour import ContourSet
+from matplotlib.patches import PathPatch
 from matplotlib.text import Text
 
 from cupfem import figures
 from cupfem.cup import load_cup
 from cupfem.drawing import survey
-from cupfem.figures import style
+from cupfem.figures import outline, style
 from cupfem.figures.heat import grouped_flows, grouped_heats
 from cupfem.pour import pour
 from cupfem.serving import Serving
@@ -114,22 +115,20 @@ def test_wall_map(run):
 
 class TestField:
     def test_colours_are_the_field(self, run):
-        figure = figures.field_figure(run, times=[10.0])
-        (cells,) = (artist for artist in figure.axes[0].findobj(PolyCollection))
-        field = run.snapshot(10.0)
-        values = np.asarray(cells.get_array())
-        assert len(values) == 4 * run.mesh.element_dofs.shape[1]
-        corners = run.mesh.element_dofs[[0, 4, 8, 7], 0]
-        assert values[0] == pytest.approx(field[corners].mean())
-        assert field.min() <= values.min() <= values.max() <= field.max()
+        (whole,) = figures.field_figure(run, times=[10.0]).axes[0].findobj(TriMesh)
+        assert np.array_equal(np.asarray(whole.get_array()), run.snapshot(10.0))
 
-    def test_cells_fill_the_section(self, run):
-        """Shoelace area of the quarters against that of the whole cells."""
-        (cells,) = figures.field_figure(run, times=[10.0]).axes[0].findobj(PolyCollection)
-        quarters = sum(area(path.vertices[:4]) for path in cells.get_paths())
-        grid = run.mesh.grid
-        whole = sum(area(1e3 * grid.p[:, cell].T) for cell in grid.t.T)
-        assert quarters == pytest.approx(whole, rel=1e-9)
+    def test_us_colours(self, run):
+        (whole,) = figures.field_figure(run, times=[10.0], units="us").axes[0].findobj(TriMesh)
+        assert np.asarray(whole.get_array()) == pytest.approx(fahrenheit(run.snapshot(10.0)))
+
+    def test_triangles_fill_the_section(self, run):
+        """Shoelace area of all triangles against that of the cells."""
+        mesh = run.mesh
+        found = outline.triangles(mesh, np.arange(mesh.element_dofs.shape[1]))
+        fine = sum(area(mesh.points[:, three].T) for three in found)
+        whole = sum(area(mesh.grid.p[:, cell].T) for cell in mesh.grid.t.T)
+        assert fine == pytest.approx(whole, rel=1e-9)
 
     def test_proportion_is_true(self, run):
         for units in ("si", "us"):
@@ -198,12 +197,17 @@ class TestSection:
         assert "level, 6.76 fl oz" in found
         assert not any("mm" in text for text in found)
 
-    def test_boundaries_close_the_section(self, run):
-        """Every corner of a boundary line belongs to an even number of them."""
-        (found,) = figures.section_figure(run).axes[0].findobj(LineCollection)
-        ends = np.round(np.concatenate([path.vertices for path in found.get_paths()]), 6)
-        counts = np.unique(ends, axis=0, return_counts=True)[1]
-        assert set(counts) <= {2, 3, 4}
+    def test_every_region_is_filled_and_outlined(self, run):
+        """Area of the filled paths by the shoelace formula; corners of the outline meet 2, 3 or 4 lines."""
+        axes = figures.section_figure(run).axes[0]
+        paths = {patch.get_fill(): patch.get_path() for patch in axes.findobj(PathPatch)}
+        filled = [patch.get_path() for patch in axes.findobj(PathPatch) if patch.get_fill()]
+        assert len(filled) == len(run.mesh.regions)
+        total = sum(area(cell[:4]) for path in filled for cell in path.vertices.reshape(-1, 5, 2))
+        grid = run.mesh.grid
+        assert total == pytest.approx(1e6 * sum(area(grid.p[:, cell].T) for cell in grid.t.T), rel=1e-9)
+        ends = np.round(paths[False].vertices, 6)
+        assert set(np.unique(ends, axis=0, return_counts=True)[1]) <= {2, 3, 4}
 
 
 class TestHeat:

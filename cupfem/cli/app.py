@@ -2,6 +2,7 @@
 
 from __future__ import annotations
 
+import sys
 from typing import Annotated, Literal
 
 import typer
@@ -47,9 +48,8 @@ app = typer.Typer(
 
 def _version(wanted: bool) -> None:
     if wanted:
-        from importlib.metadata import version
-
-        typer.echo(f"cupfem {version('cupfem')}")
+        package = sys.modules[__name__.partition(".")[0]]
+        typer.echo(f"cupfem {package.__version__}")
         raise typer.Exit
 
 

@@ -24,8 +24,9 @@ def print_materials(name: str | None, units: Units) -> None:
         console.print("A material of your own is a table of the cup file; its keys are those above.")
         return
     if name not in known:
-        why = f"not in the library.{nearest(name, known)}"
-        raise InputError("material", name, why, "see `cupfem materials`")
+        hint = nearest(name, known)
+        why = f"not in the library.{hint}" if hint else "not in the library"
+        raise InputError("material", name, why, "cupfem materials lists them")
     material = known[name]
     console.print(materials_table([material], units))
     console.print(f"kind: {material.kind}; surface, for the contact of a finger: {material.surface_class}")

@@ -30,7 +30,7 @@ def _status(arguments: Sequence[str]) -> int:
     try:
         answer = app(arguments, prog_name="cupfem", standalone_mode=False)
     except typer.TyperException as error:
-        return _told(f"{error.format_message()} See cupfem --help.", error.exit_code)
+        return _told(f"{error.format_message().rstrip('.')}; see cupfem --help", error.exit_code)
     except ConvergenceError as error:
         return _told(str(error), NOT_CONVERGED)
     except CupfemError as error:

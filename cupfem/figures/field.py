@@ -9,9 +9,11 @@ from typing import Any
 import numpy as np
 from matplotlib.axes import Axes
 from matplotlib.cm import ScalarMappable
-from matplotlib.collections import LineCollection, PolyCollection
+from matplotlib.collections import TriMesh
 from matplotlib.colors import BoundaryNorm, Colormap
 from matplotlib.figure import Figure
+from matplotlib.patches import PathPatch
+from matplotlib.path import Path
 from matplotlib.ticker import MaxNLocator
 from matplotlib.tri import Triangulation
 from numpy.typing import NDArray
@@ -38,22 +40,20 @@ class _Canvas:
     edges: Floats
     colours: Colormap
     norm: BoundaryNorm
-    cells: Floats
-    corners: Ints
-    lines: Floats
+    whole: Triangulation
     strip: Triangulation
     strip_dofs: Ints
-    strip_lines: Floats
+    strip_lines: Path
 
     @property
     def reach(self) -> float:
         """Largest radius [shown unit]."""
-        return float(self.cells[:, :, 0].max())
+        return float(self.whole.x.max())
 
     @property
     def top(self) -> float:
         """Height of the brim [shown unit]."""
-        return float(self.cells[:, :, 1].max())
+        return float(self.whole.y.max())
 
 
 def field_times(run: Run, wanted: Sequence[float] = TIMES) -> list[float]:
@@ -111,7 +111,7 @@ def _canvas(run: Run, times: Sequence[float], units: Units) -> _Canvas:
     edges, colours, norm = style.bands(min(float(fields.min()), COMFORT - 1.0), highest, units)
     points = style.shown(mesh.points, "length", units)
     unrolled = style.shown(outline.heights_across(mesh, run.meridian), "length", units)
-    all_corners = outline.quarters(mesh, np.arange(mesh.element_dofs.shape[1]))
+    everything = np.arange(mesh.element_dofs.shape[1])
     strip, dofs = _strip_triangles(run, unrolled)
     return _Canvas(
         run=run,
@@ -119,12 +119,10 @@ def _canvas(run: Run, times: Sequence[float], units: Units) -> _Canvas:
         edges=edges,
         colours=colours,
         norm=norm,
-        cells=points[:, all_corners].transpose(2, 1, 0),
-        corners=all_corners,
-        lines=outline.boundaries(mesh, points),
+        whole=Triangulation(points[0], points[1], outline.triangles(mesh, everything)),
         strip=strip,
         strip_dofs=dofs,
-        strip_lines=outline.boundaries(mesh, unrolled),
+        strip_lines=outline.path_of_lines(outline.boundaries(mesh, unrolled)),
     )
 
 
@@ -135,11 +133,8 @@ def _strip_triangles(run: Run, unrolled: Floats) -> tuple[Triangulation, Ints]:
 
 
 def _section(axes: Axes, canvas: _Canvas, field: Floats, time: float) -> None:
-    values = field[canvas.corners].mean(axis=0)
-    cells = PolyCollection(list(canvas.cells), array=values, cmap=canvas.colours, norm=canvas.norm)
-    cells.set_edgecolor("face")
-    cells.set_linewidth(0.4)
-    axes.add_collection(cells, autolim=False)
+    whole = TriMesh(canvas.whole, array=field, cmap=canvas.colours, norm=canvas.norm)
+    axes.add_collection(whole, autolim=False)
     _drink(axes, canvas, time)
     axes.set_xlim(0.0, SIDE * canvas.reach)
     _upright(axes, canvas)
@@ -170,9 +165,7 @@ def _drink(axes: Axes, canvas: _Canvas, time: float) -> None:
 def _strip(axes: Axes, canvas: _Canvas, field: Floats) -> None:
     values = field[canvas.strip_dofs]
     axes.tricontourf(canvas.strip, values, levels=canvas.edges, cmap=canvas.colours, norm=canvas.norm)
-    axes.add_collection(
-        LineCollection(list(canvas.strip_lines), colors="#9aa3ad", linewidths=0.5), autolim=False
-    )
+    axes.add_artist(PathPatch(canvas.strip_lines, fill=False, edgecolor="#9aa3ad", linewidth=0.5))
     limit = style.shown(COMFORT, "temperature", canvas.units)
     if values.min() < limit < values.max():
         for colour, width in (("black", 2.6), ("white", 1.3)):

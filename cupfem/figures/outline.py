@@ -3,6 +3,7 @@
 from __future__ import annotations
 
 import numpy as np
+from matplotlib.path import Path
 from numpy.typing import NDArray
 
 from cupfem.meridian import Meridian
@@ -59,6 +60,16 @@ def boundaries(mesh: SectionMesh, coordinates: Floats) -> Floats:
     dof[mesh.grid.t] = mesh.element_dofs[:4]
     lines = coordinates[:, dof[mesh.grid.facets[:, first != second]]].transpose(2, 1, 0)
     return np.asarray(lines[~np.isnan(lines).any(axis=(1, 2))])
+
+
+def path_of_cells(cells: Floats) -> Path:
+    """All cells `[cell, corner, 2]` as one path: one artist draws far faster than one for each cell."""
+    return Path.make_compound_path_from_polys(cells)
+
+
+def path_of_lines(lines: Floats) -> Path:
+    """All lines `[line, 2, 2]` as one path."""
+    return Path(lines.reshape(-1, 2), np.tile([Path.MOVETO, Path.LINETO], len(lines)))
 
 
 def layer_colours(meridian: Meridian) -> dict[str, str]:

@@ -7,9 +7,9 @@ from typing import Protocol
 
 import numpy as np
 from matplotlib.axes import Axes
-from matplotlib.collections import LineCollection, PolyCollection
 from matplotlib.figure import Figure
-from matplotlib.patches import Rectangle
+from matplotlib.patches import PathPatch, Rectangle
+from matplotlib.path import Path
 from numpy.typing import NDArray
 
 from cupfem.cup import Cup
@@ -45,20 +45,15 @@ class _Sheet:
     title: str
     units: Units
     level: float
-    cells: Floats
-    colours: list[str]
-    lines: Floats
+    fills: list[tuple[Path, str]]
+    lines: Path
+    reach: float
 
     def length(self, value: float) -> float:
         return float(style.shown(value, "length", self.units))
 
     def text(self, value: float) -> str:
         return style.quantity(value, "length", self.units)
-
-    @property
-    def reach(self) -> float:
-        """Largest radius [shown unit]."""
-        return float(self.cells[:, :, 0].max())
 
 
 def section_figure(drawn: Drawn | Run, units: Units = "si") -> Figure:
@@ -82,18 +77,16 @@ def _sheet(drawn: Drawn | Run, units: Units) -> _Sheet:
     points = style.shown(mesh.points, "length", units)
     colour = outline.region_colours(mesh, meridian)
     level = float(drawn.series.drink_level[0]) if isinstance(drawn, Run) else drawn.fill_level
-    colours = [""] * mesh.element_dofs.shape[1]
-    for region, elements in mesh.regions.items():
-        for element in elements:
-            colours[element] = colour[region]
-    cells = points[:, mesh.element_dofs[:4]].transpose(2, 1, 0)
-    return _Sheet(meridian, drawn.cup.title, units, level, cells, colours, outline.boundaries(mesh, points))
+    corners = points[:, mesh.element_dofs[:4]].transpose(2, 1, 0)
+    fills = [(outline.path_of_cells(corners[cells]), colour[name]) for name, cells in mesh.regions.items()]
+    lines = outline.path_of_lines(outline.boundaries(mesh, points))
+    return _Sheet(meridian, drawn.cup.title, units, level, fills, lines, float(corners[:, :, 0].max()))
 
 
 def _cut(axes: Axes, sheet: _Sheet, width: float) -> None:
-    cells = PolyCollection(list(sheet.cells), facecolors=sheet.colours, linewidths=0, antialiaseds=False)
-    axes.add_collection(cells, autolim=False)
-    axes.add_collection(LineCollection(list(sheet.lines), colors=style.INK, linewidths=width), autolim=False)
+    for path, colour in sheet.fills:
+        axes.add_artist(PathPatch(path, facecolor=colour, linewidth=0, antialiased=False))
+    axes.add_artist(PathPatch(sheet.lines, fill=False, edgecolor=style.INK, linewidth=width))
 
 
 def _whole(axes: Axes, sheet: _Sheet) -> None:
