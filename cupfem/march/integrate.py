@@ -113,6 +113,8 @@ class March:
             trial = _Trial(self, state, slope, powers, time, step)
             converged = trial.attempt()
             error = trial.error / self.tolerance if converged else np.inf
+            if not converged and self.fixed_step is not None:
+                raise ConvergenceError(f"a stage does not converge at t = {time:.6g} s, step {step:.3g} s")
             if error > 1.0 and self.fixed_step is None:
                 self.counters.rejected += 1
                 step *= max(LEAST_GROWTH, SAFETY * error**-0.25) if converged else LEAST_GROWTH

@@ -52,6 +52,7 @@ class System:
     drink: Drink | None = None
     ambient: Ambient = ROOM
     slices: list[slice] = field(init=False)
+    _last: tuple[object, Lumped] = field(init=False, repr=False, default=(None, Lumped(ROOM)))
 
     def __post_init__(self) -> None:
         ends = np.cumsum([0, *(section.conduction.mesh.size for section in self.sections)])
