@@ -1,0 +1,95 @@
+"""The layered radial estimate through a serving: sips, drinking, steps of the room, a level that passes.
+
+The serving is cut where something jumps: there the films of the station change, and the wall goes on from
+where it was. Between two cuts the wetted and dry lengths are those of the middle of the span.
+"""
+
+from __future__ import annotations
+
+from collections.abc import Callable, Iterator
+from dataclasses import replace
+from itertools import pairwise
+
+import numpy as np
+from numpy.typing import ArrayLike, NDArray
+
+from cupfem import edges
+from cupfem.cup import Cup
+from cupfem.estimates.drink import lumped_drink, volume_at
+from cupfem.estimates.radial import ELEMENTS, TOLERANCE, RadialWall, Transient
+from cupfem.estimates.rosenbrock import Path, integrate, joined
+from cupfem.estimates.station import Face, Station, level_of, station
+from cupfem.serving import Serving
+
+Floats = NDArray[np.float64]
+
+
+def follow(
+    cup: Cup,
+    serving: Serving,
+    height: float,
+    drink: float | Callable[[float], ArrayLike] | None = None,
+    elements: int = ELEMENTS,
+    tolerance: float = TOLERANCE,
+) -> Transient:
+    """The station at a height [m] through the serving.
+
+    `drink`: temperature [degC] that holds, or a function of the time [s]; left out: `drink_course`. Raises
+    InputError for a height that is not on the wall.
+    """
+    course = drink_course(cup, serving) if drink is None else drink
+    paths: list[Path] = []
+    state: Floats | None = None
+    for begin, end in _spans(cup, serving, height):
+        level = level_of(cup, volume_at(cup, serving, 0.5 * (begin + end), begin))
+        wall = RadialWall(station(cup, serving, height, level, begin), course, elements)
+        paths.append(integrate(wall, wall.start() if state is None else state, begin, end, tolerance))
+        state = paths[-1].last
+    path = joined(paths)
+    return Transient(station(cup, serving, height), path, wall.faces, wall.drink_of(path))
+
+
+def drink_course(cup: Cup, serving: Serving, tolerance: float = TOLERANCE) -> DrinkCourse:
+    """The lumped drink through the serving, cooled by its surface and by a wall like that of one station.
+
+    The station lies at half the wetted height of the pour, and the wetted wall and base count as like it.
+    """
+    paths: list[Path] = []
+    state: Floats | None = None
+    for begin, end in pairwise((0.0, *serving.breaks(), serving.duration)):
+        place = wetted_station(cup, serving, 0.5 * (begin + end), begin)
+        wall = RadialWall(place, lumped_drink(cup, serving, begin))
+        paths.append(integrate(wall, wall.start() if state is None else state, begin, end, tolerance))
+        state = paths[-1].last
+    return DrinkCourse(joined(paths))
+
+
+class DrinkCourse:
+    """Temperature of the drink [degC] as a function of the time [s]."""
+
+    def __init__(self, path: Path):
+        self.path = path
+
+    def __call__(self, time: ArrayLike) -> Floats:
+        return np.asarray(self.path(time)[..., 0])
+
+
+def wetted_station(cup: Cup, serving: Serving, time: float = 0.0, begin: float = 0.0) -> Station:
+    """The station at half the wetted height of the pour, with the film of a time and the room of `begin`."""
+    poured = level_of(cup, volume_at(cup, serving, 0.0))
+    level = level_of(cup, volume_at(cup, serving, time, begin))
+    found = station(cup, serving, 0.5 * (cup.floor + poured), poured, begin)
+    return replace(found, inner=Face(edges.wetted_films(cup, serving, level)))
+
+
+def _spans(cup: Cup, serving: Serving, height: float) -> Iterator[tuple[float, float]]:
+    """Spans between two jumps, cut where the level passes the height."""
+    passed = cup.volume(max(height, cup.floor))
+    for begin, end in pairwise((0.0, *serving.breaks(), serving.duration)):
+        first, last = (volume_at(cup, serving, time, begin) for time in (begin, end))
+        if first > passed > last:
+            cut = begin + (end - begin) * (first - passed) / (first - last)
+            yield begin, cut
+            yield cut, end
+        else:
+            yield begin, end
