@@ -77,10 +77,14 @@ class System:
         return state[self._walls :]
 
     def lumped(self, state: Floats) -> Lumped:
-        """Drink and room as the walls see them."""
-        return (
-            self.drink.lumped(self.drink_state(state), self.ambient) if self.drink else Lumped(self.ambient)
-        )
+        """Drink and room as the walls see them; the last one is kept, as it is asked for several times."""
+        if self.drink is None:
+            return Lumped(self.ambient)
+        drink = self.drink_state(state)
+        key = (drink.tobytes(), self.ambient, self.drink)
+        if key != self._last[0]:
+            self._last = key, self.drink.lumped(drink, self.ambient)
+        return self._last[1]
 
     def stored(self, state: Floats) -> dict[str, float]:
         """Heat stored above 0 degC [J]: each region (all sections, by share) and the drink."""
