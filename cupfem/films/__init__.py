@@ -20,7 +20,7 @@ from cupfem.films.base import (
     Values,
     applied_range,
 )
-from cupfem.films.drink_side import DrinkConvection
+from cupfem.films.drink_side import DrinkConvection, Stirred
 from cupfem.films.evaporation import (
     CLOSURES,
     DEFAULT_CLOSURE,
@@ -30,6 +30,7 @@ from cupfem.films.evaporation import (
     Shah,
     closure,
 )
+from cupfem.films.headspace import Condensation, Hole, RadiationTo, condensed
 from cupfem.films.outside import (
     Convection,
     ForcedConvection,
@@ -44,7 +45,14 @@ from cupfem.films.surface import (
     SurfaceClosure,
     SurfaceState,
 )
-from cupfem.films.underneath import TABLE_RESISTANCE, CavityAir, HorizontalPlate, disk_length
+from cupfem.films.underneath import (
+    TABLE_RESISTANCE,
+    CavityAir,
+    HorizontalPlate,
+    TableContact,
+    ThickTable,
+    disk_length,
+)
 
 __all__ = [
     "CLOSURES",
@@ -59,6 +67,7 @@ __all__ = [
     "BowerSaylor",
     "CavityAir",
     "ChiltonColburn",
+    "Condensation",
     "Convection",
     "DrinkConvection",
     "Film",
@@ -66,19 +75,25 @@ __all__ = [
     "FixedFilm",
     "FluxFunction",
     "ForcedConvection",
+    "Hole",
     "HorizontalPlate",
     "MixedConvection",
     "NaturalConvectionCurl",
     "NaturalConvectionPlate",
     "Radiation",
+    "RadiationTo",
     "Recessed",
     "RyanHarleman",
     "Shah",
+    "Stirred",
     "SurfaceClosure",
     "SurfaceState",
+    "TableContact",
+    "ThickTable",
     "Validity",
     "Values",
     "applied_range",
     "closure",
+    "condensed",
     "disk_length",
 ]

@@ -79,3 +79,25 @@ class DrinkConvection(Convection):
             return nu.reached_by_plate(rayleigh, lightness)
         tested = nu.VERTICAL_PLATE if self.form == "all" else nu.VERTICAL_PLATE_LAMINAR
         return [reached(tested, rayleigh)]
+
+
+@dataclass(frozen=True)
+class Stirred(Convection):
+    """A drink that pouring or a spoon keeps moving: natural convection blended with a given coefficient.
+
+    Formula: h^3 = h_natural^3 + h_stirred^3.
+    Parameters: still: the film of the still drink; moving [W/(m2 K)].
+    Range: scoping: 1000 to 3000 W/(m2 K) in the seconds after pouring or stirring, no source.
+    Reference: the blend as in `MixedConvection`.
+    """
+
+    still: DrinkConvection
+    moving: float
+    label: ClassVar[str] = "stirred drink"
+    source: ClassVar[str] = "coefficient of the stirred drink: scoping estimate, no source"
+
+    def coefficient(self, surface: Values, surroundings: Values, height: Values = 0.0) -> Values:
+        return nu.blend(self.still.coefficient(surface, surroundings, height), self.moving)
+
+    def applied(self, surface: Values, surroundings: Values) -> list[Applied]:
+        return self.still.applied(surface, surroundings)
