@@ -3,7 +3,6 @@
 from __future__ import annotations
 
 from collections.abc import Callable, Mapping
-from dataclasses import replace
 
 import numpy as np
 from numpy.typing import NDArray
@@ -12,6 +11,7 @@ from cupfem.cup import Cup
 from cupfem.films import Film
 from cupfem.inputs import defaults_used
 from cupfem.march import March
+from cupfem.pour.grip import Grip
 from cupfem.pour.record import Recorder, series_times, snapshot_times
 from cupfem.problem import Problem, build
 from cupfem.run import Run, faces_of
@@ -64,36 +64,46 @@ def pour(
         If the march cannot go on.
     """
     serving = serving or Serving()
-    problem = build(cup, serving, fineness, films)
-    run = replace(_march(problem, fineness, tolerance, progress), films=dict(films or {}))
+    films = dict(films or {})
+    run = _march(cup, serving, films, fineness, tolerance, progress)
     if not companion:
         return run
-    coarse = _march(build(cup, serving, fineness * COMPANION, films), fineness * COMPANION, tolerance, None)
+    coarse = _march(cup, serving, films, fineness * COMPANION, tolerance, None)
     return run.with_space_errors(_space_errors(run, coarse))
 
 
 def _march(
-    problem: Problem, fineness: float, tolerance: float, progress: Callable[[float], None] | None
+    cup: Cup,
+    serving: Serving,
+    films: Mapping[str, Film],
+    fineness: float,
+    tolerance: float,
+    progress: Callable[[float], None] | None,
 ) -> Run:
-    serving, system = problem.serving, problem.system
+    problem = build(cup, serving, fineness, films)
+    grip = Grip(problem, fineness, films)
     faces = faces_of(problem.mesh, problem.meridian)
     times = series_times(serving.duration, serving.breaks())
-    recorder = Recorder(system, faces, times, snapshot_times(serving.duration))
-    march = March(system, tolerance)
+    recorder = Recorder(problem.system, faces, times, snapshot_times(serving.duration))
+    march = March(problem.system, tolerance)
     state = problem.start
-    before = system.stored(state)
-    ends = [*serving.breaks(), serving.duration]
+    before = problem.system.stored(state)
     time = 0.0
-    for end in ends:
+    for end in [*serving.breaks(), serving.duration]:
         problem.enter(time)
-        recorder.start(system, state, time)
+        state = _regrip(grip, state, time, recorder)
+        march.system = problem.system
+        recorder.start(problem.system, state, time)
+        grip.start(state, time, recorder.snapshot_times)
         for step in march.run(state, time, end):
-            recorder.add(system, step)
+            recorder.add(problem.system, step)
+            grip.add(step, recorder.snapshot_times)
             state = step.after
             if progress is not None:
                 progress(step.end)
         state = _sip(problem, state, end, recorder)
         time = end
+    state = _regrip(grip, state, time, recorder)
     return Run(
         cup=problem.cup,
         serving=serving,
@@ -105,12 +115,21 @@ def _march(
         series=recorder.series(),
         snapshot_times=snapshot_times(serving.duration),
         snapshots=recorder.snapshots,
-        ledger=recorder.ledger(before, system.stored(state)),
+        ledger=recorder.ledger(before, problem.system.stored(state)),
         counters=vars(march.counters),
         time_error=recorder.time_error,
         defaults=(*defaults_used(problem.cup), *defaults_used(serving)),
         final_state=state,
+        films=films,
+        pads=grip.results(),
     )
+
+
+def _regrip(grip: Grip, state: Floats, time: float, recorder: Recorder) -> Floats:
+    """The state after fingers let go and touch at a break."""
+    state, heat = grip.change(state, time)
+    recorder.add_heat(heat)
+    return state
 
 
 def _sip(problem: Problem, state: Floats, time: float, recorder: Recorder) -> Floats:

@@ -18,7 +18,7 @@ class Recorder:
     """Samples accepted steps at the times of the series and of the snapshots."""
 
     def __init__(self, system: System, faces: Faces, times: Floats, snapshot_times: Floats):
-        self._faces, self._times, self._snapshot_times = faces, times, snapshot_times
+        self._faces, self._times, self.snapshot_times = faces, times, snapshot_times
         self._size = system.sections[0].conduction.mesh.size
         self._kept = np.full((len(times), 3), np.nan)
         self._outer = np.empty((len(times), len(faces.outer)))
@@ -35,7 +35,7 @@ class Recorder:
             self._keep(int(index), system, state)
             powers = system.loads(state, time)[1]
             self._keep_powers(int(index), powers)
-        for index in np.flatnonzero(np.isclose(self._snapshot_times, time, rtol=0.0, atol=1e-9)):
+        for index in np.flatnonzero(np.isclose(self.snapshot_times, time, rtol=0.0, atol=1e-9)):
             self.snapshots[index] = state[: self._size]
 
     def add(self, system: System, step: Step) -> None:
@@ -51,8 +51,8 @@ class Recorder:
             add_terms(mixed, step.powers_before, 1.0 - share)
             add_terms(mixed, step.powers_after, share)
             self._keep_powers(index, mixed)
-        for index in _within(self._snapshot_times, step):
-            self.snapshots[index] = step.at(self._snapshot_times[index])[: self._size]
+        for index in _within(self.snapshot_times, step):
+            self.snapshots[index] = step.at(self.snapshot_times[index])[: self._size]
 
     def add_heat(self, terms: Mapping[str, float]) -> None:
         """Heats of a jump, such as a sip [J]."""

@@ -1,6 +1,7 @@
 """The immutable result of a run; its headline figures; load and save."""
 
 from cupfem.run.headline import CAUTION, COMFORT, FREE_WALL, MOISTURE
+from cupfem.run.pads import PadField
 from cupfem.run.result import Faces, Ledger, Run, Series, faces_of
 from cupfem.run.store import load_run, save_run
 
@@ -11,6 +12,7 @@ __all__ = [
     "MOISTURE",
     "Faces",
     "Ledger",
+    "PadField",
     "Run",
     "Series",
     "faces_of",

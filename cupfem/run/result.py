@@ -19,6 +19,7 @@ from cupfem.meridian import Meridian
 from cupfem.mesh import SectionMesh
 from cupfem.quantities import Units
 from cupfem.run import headline
+from cupfem.run.pads import PadField
 from cupfem.serving import Serving
 
 Floats = NDArray[np.float64]
@@ -118,6 +119,8 @@ class Run:
     ranges: tuple[str, ...] = ()
     films: Mapping[str, Film] = field(default_factory=dict)
     """Films that Python gave instead of the serving's, by edge."""
+    pads: tuple[PadField, ...] = ()
+    """What the serving's pads felt."""
 
     @property
     def time(self) -> Floats:

@@ -6,7 +6,7 @@ and joined by `TIGHT`. Array shapes: h heights, c columns, n nodes, p pick-ups, 
 
 from __future__ import annotations
 
-from dataclasses import dataclass, field
+from dataclasses import dataclass, field, replace
 from itertools import pairwise
 
 import numpy as np
@@ -41,14 +41,13 @@ class GapLinks:
     outer: int
     inner_radius: Floats
     outer_radius: Floats
-    resistance: Floats | float = 1.0
 
     def update(self, link: Floats, temperature: Floats) -> None:
         """Write the links `[c, n - 1]` for temperatures `[c, n]` (in place)."""
         faces = temperature[self.columns, self.inner], temperature[self.columns, self.outer]
         radii = self.inner_radius, self.outer_radius
         conductivity = self.layer.gap.through_conductivity(*faces, *radii, self.layer.height)
-        whole = conductivity / np.log(self.outer_radius / self.inner_radius) / self.resistance
+        whole = conductivity / np.log(self.outer_radius / self.inner_radius)
         links = slice(self.inner, self.outer)
         link[self.columns, links] = (whole * (self.outer - self.inner))[:, None]
 
@@ -97,7 +96,6 @@ class Wall:
                 gap.outer,
                 tiled(gap.inner_radius),
                 tiled(gap.outer_radius),
-                gap.resistance,
             )
             for gap in self.gaps
         ]
@@ -158,7 +156,7 @@ class _Builder:
         columns = np.flatnonzero(where)
         last = self.first + nodes.shape[1] - 1
         radii = self.radius[where] + nodes[where, 0], self.radius[where] + nodes[where, -1]
-        self.gaps.append(GapLinks(layer, columns, self.first, last, *radii, self.left))
+        self.gaps.append(GapLinks(pressed(layer, self.left), columns, self.first, last, *radii))
 
     def _contact(self, index: int) -> Floats:
         """Conductance between a layer and what is inside it [W/(m2 K)]."""
@@ -172,6 +170,11 @@ class _Builder:
             there = np.asarray(layer.thickness_at(self.z)) > MINIMUM_THICKNESS
             out = np.where(there, np.minimum(layer.inner_conductance_at(self.z), TIGHT), out)
         return np.asarray(out)
+
+
+def pressed(layer: GasLayer, share: float) -> GasLayer:
+    """A gap under a grip that leaves a share of its resistance."""
+    return replace(layer, gap=layer.gap.pressed(share))
 
 
 def _fractions(count: int) -> Floats:
