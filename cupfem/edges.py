@@ -66,16 +66,15 @@ def outside_films(cup: Cup, serving: Serving, emissivity: float | None = None) -
 def outside_convection(cup: Cup, serving: Serving) -> NaturalConvectionPlate | MixedConvection:
     """Natural convection on the outside, with the air stream of the room where there is one."""
     diameter = mean_outside_diameter(cup)
-    lean = cup.half_taper_angle
-    natural = NaturalConvectionPlate(_along(cup, cup.height), lean=lean, diameter=diameter, pressure=PRESSURE)
+    length, lean = _along(cup, 0.0, cup.height), cup.half_taper_angle
+    natural = NaturalConvectionPlate(length, lean=lean, diameter=diameter, pressure=PRESSURE)
     speed = serving.room.air_speed
     return MixedConvection(natural, ForcedConvection(speed, diameter, PRESSURE)) if speed else natural
 
 
 def wetted_films(cup: Cup, serving: Serving, level: float) -> Films:
     """Film between wall and drink, for a level above the table [m]."""
-    length = _along(cup, level - cup.floor)
-    return _drink_films(serving, "wall", length, cup.half_taper_angle)
+    return _drink_films(serving, "wall", _along(cup, cup.floor, level), cup.half_taper_angle)
 
 
 def floor_films(cup: Cup, serving: Serving) -> Films:
@@ -94,10 +93,11 @@ def dry_films(cup: Cup, serving: Serving, level: float, emissivity: float | None
         return {"dry wall": FixedFilm(entry.coefficient)}
     dry = max(cup.height - max(level, cup.floor), SHORTEST)
     if emissivity is None:
-        emissivity = emissivity_of(cup, stack_at(cup, cup.height)[0])
+        emissivity = cup.emissivity(cup.stack(cup.height)[0], "inner")
     below, mouth = cup.inner_radius(cup.height - dry), cup.inner_radius(cup.height)
     share = emissivity * wall_to_mouth(below, mouth, dry)
-    plate = NaturalConvectionPlate(_along(cup, dry), lean=cup.half_taper_angle, pressure=PRESSURE)
+    length = _along(cup, cup.height - dry, cup.height)
+    plate = NaturalConvectionPlate(length, lean=cup.half_taper_angle, pressure=PRESSURE)
     return {"dry wall convection": plate, "dry wall radiation": Radiation(share)}
 
 
@@ -139,11 +139,11 @@ def gap_of(cup: Cup, index: int, height: float | None = None) -> Gap:
     """
     layer = cup.layer[index]
     low, high = cup.layer_range(layer)
-    stack = stack_at(cup, 0.5 * (low + high) if height is None else height)
+    stack = cup.stack(0.5 * (low + high) if height is None else height)
     place = stack.index(layer)
     return Gap(
-        emissivity_of(cup, stack[place - 1]),
-        emissivity_of(cup, stack[place + 1]),
+        cup.emissivity(stack[place - 1], "outer"),
+        cup.emissivity(stack[place + 1], "inner"),
         contact_fraction=layer.contact_fraction,
         contact_conductance=layer.contact_conductance,
         pressure=PRESSURE if layer.pressure is None else layer.pressure,
@@ -151,27 +151,22 @@ def gap_of(cup: Cup, index: int, height: float | None = None) -> Gap:
 
 
 def gap_height(cup: Cup, index: int) -> float:
-    """Height of a gap along the wall [m]."""
-    low, high = cup.layer_range(cup.layer[index])
-    return _along(cup, high - low)
+    """Height of a gap along the wall [m]; of hollow ridges that of one ring."""
+    return _along(cup, *cup.spans(cup.layer[index])[0])
 
 
-def stack_at(cup: Cup, height: float) -> list[Layer]:
-    """Layers that reach a height [m] on the inside face, inside to outside, without their blends."""
-    ranges = [(layer, *cup.layer_range(layer)) for layer in cup.layer]
-    return [layer for layer, low, high in ranges if low <= height <= high]
-
-
-def emissivity_of(cup: Cup, layer: Layer) -> float:
-    """Emissivity of a layer's faces [-]."""
-    return cup.material(layer.material).emissivity.value
+def emissivity_of(cup: Cup, layer: Layer, face: Literal["inner", "outer"] = "outer") -> float:
+    """Emissivity of a layer's face [-]."""
+    return cup.emissivity(layer, face)
 
 
 def mean_outside_diameter(cup: Cup) -> float:
     """Mean over the height of the outer diameter [m]."""
-    spans = [(layer.thickness, *cup.layer_range(layer)) for layer in cup.layer]
+    spans = [(layer.thickness, low, high) for layer in cup.layer for low, high in cup.spans(layer)]
     wall = sum(thickness * (high - low) for thickness, low, high in spans) / cup.height
-    return 2.0 * (cup.inner_radius(0.5 * cup.height) + wall * math.cos(cup.half_taper_angle))
+    radius, height = cup.profile.radius, cup.profile.height
+    inside = float(0.5 * (radius[1:] + radius[:-1]) @ np.diff(height)) / cup.height
+    return 2.0 * (inside + wall * math.cos(cup.half_taper_angle))
 
 
 @dataclass(frozen=True)
@@ -195,9 +190,10 @@ class RadiationByHeight:
 
 def wall_radiation(cup: Cup) -> Radiation | RadiationByHeight:
     """Radiation of the outside, by the emissivity of the outermost layer at each height."""
-    ends = sorted({0.0, cup.height, *(end for layer in cup.layer for end in cup.layer_range(layer))})
+    spans = [span for layer in cup.layer for span in cup.spans(layer)]
+    ends = sorted({0.0, cup.height, *(end for span in spans for end in span)})
     middles = [0.5 * (low + high) for low, high in pairwise(ends)]
-    found = [emissivity_of(cup, stack_at(cup, middle)[-1]) for middle in middles]
+    found = [cup.emissivity(cup.stack(middle)[-1], "outer") for middle in middles]
     if len(set(found)) == 1:
         return Radiation(found[0])
     # a layer's end is cut along the normal, which meets the outer face lower on a wall that widens upwards
@@ -236,6 +232,7 @@ def _drink_films(serving: Serving, place: Literal["wall", "base"], length: float
     return {TO_DRINK: DrinkConvection(serving.drink.liquid, length, place, lean)}
 
 
-def _along(cup: Cup, rise: float) -> float:
-    """Length along the wall of a rise in height [m], at least `SHORTEST`."""
-    return max(rise, SHORTEST) / math.cos(cup.half_taper_angle)
+def _along(cup: Cup, low: float, high: float) -> float:
+    """Length along the inside face between two heights [m], at least `SHORTEST`."""
+    first, last = cup.profile.arc_length_at([low, high]).tolist()
+    return max(last - first, SHORTEST)

@@ -211,3 +211,28 @@ def test_a_gap_takes_the_emissivities_of_its_neighbours(cup):
     thin = Cup.from_text(CUP.replace('contact_fraction = 0.02', 'pressure = "1 Pa"').replace(
         'contact_conductance = "80 W/(m^2 K)"\n', ""))  # fmt: skip
     assert edges.gap_of(thin, 1).pressure == 1.0
+
+
+def test_a_face_of_its_own_emissivity_goes_before_the_material():
+    """A foil on the outer ply's inner face, and a lacquer on its outer face."""
+    name = 'name = "outer"'
+    coated = Cup.from_text(CUP.replace(name, name + "\ninner_emissivity = 0.05\nouter_emissivity = 0.8"))
+    gap = edges.gap_of(coated, 1)
+    assert (gap.emissivity_inner, gap.emissivity_outer) == (0.92, 0.05)
+    assert edges.wall_radiation(coated).emissivities == (0.92, 0.8, 0.92)
+
+
+def test_lengths_of_a_bent_wall_follow_its_inside_face(serving):
+    """A cone on a cylinder; the length of each is exact."""
+    bent = CUP.replace('inner_top_diameter = "80 mm"\ninner_foot_diameter = "56 mm"',
+        'inner_profile = [["0 mm", "60 mm"], ["60 mm", "60 mm"], ["100 mm", "80 mm"]]')  # fmt: skip
+    cup = Cup.from_text(bent)
+    slant = math.hypot(0.04, 0.01)
+    assert edges.outside_convection(cup, serving).natural.length == pytest.approx(0.06 + slant, rel=1e-12)
+    wall = edges.wetted_films(cup, serving, 0.08)[edges.TO_DRINK]
+    assert wall.length == pytest.approx(0.0516 + 0.5 * slant, rel=1e-12)
+    assert edges.dry_films(cup, serving, 0.08)["dry wall convection"].length == pytest.approx(0.5 * slant)
+    assert edges.gap_height(cup, 1) == pytest.approx(0.04 + 0.5 * slant, rel=1e-12)
+    wall_thickness = 0.4e-3 + 0.6 * 1e-3 + 0.8 * 0.3e-3
+    mean = 0.6 * 0.06 + 0.4 * 0.07 + 2.0 * wall_thickness * math.cos(math.atan(0.1))
+    assert edges.mean_outside_diameter(cup) == pytest.approx(mean, rel=1e-9)
