@@ -65,7 +65,7 @@ class HeatFlux:
 def centre_shapes(mesh: SectionMesh) -> tuple[Floats, Floats]:
     """Shape functions `[local]` and their gradients `[2, local, element]` [1/m] at the centres of the
     cells."""
-    centre = np.full((2, 1), 0.5)
+    centre = np.full((2, 1), 0.5 if len(mesh.grid.t) == 4 else 1.0 / 3.0)
     basis = Basis(mesh.grid, mesh.basis(np.zeros(1, dtype=int)).elem, quadrature=(centre, np.ones(1)))
     fields = [shape[0] for shape in basis.basis]
     values = np.array([np.asarray(shape).flat[0] for shape in fields])
