@@ -9,7 +9,7 @@ from skfem import Basis, ElementQuad1, ElementQuad2, MeshQuad
 from cupfem.errors import InputError
 from cupfem.meridian import LayerBand
 from cupfem.mesh.section import Contact, GapFaces, SectionMesh
-from cupfem.mesh.wall import STATION_SPACING, Wall
+from cupfem.mesh.wall import BASE_CELLS, STATION_SPACING, Wall
 
 Floats = NDArray[np.float64]
 Ints = NDArray[np.int_]
@@ -97,7 +97,7 @@ class Assembler:
         self.cells.append(np.array([grid[d + 1, j], grid[d, j], grid[d, j + 1], grid[d + 1, j + 1]]))
         self.names.append("base")
         self.counts.append(len(d))
-        self.base_grid, self.base_cell_column = grid, d
+        self.base_grid = grid
 
     def _base_columns(self, radius: float) -> Floats:
         """Fractions of the inside radius from the joint to the axis: fine at the wall, coarser inwards."""
@@ -115,28 +115,28 @@ class Assembler:
         edge = self.vertices[:, joint]
         points = np.array([columns[:, None] * edge[0], np.broadcast_to(edge[1], (len(columns), rows))])
         self.vertices = np.concatenate([self.vertices, points.reshape(2, -1)], axis=1)
-        step = 2 * np.arange(1, len(columns) + 1)
-        keys = np.array(
-            [
-                np.broadcast_to(self._base_key(step)[:, None], new.shape),
-                np.broadcast_to(2.0 * np.arange(rows), new.shape),
-            ]
-        )
-        self.keys = np.concatenate([self.keys, keys.reshape(2, -1)], axis=1)
         nothing = np.full((2, new.size), np.nan)
+        self.keys = np.concatenate([self.keys, nothing], axis=1)
         self.wall_coordinates = np.concatenate([self.wall_coordinates, nothing], axis=1)
-        return np.concatenate([joint[None, :], new])
+        grid = np.concatenate([joint[None, :], new])
+        self.base_place = np.full(self.vertices.shape, np.nan)
+        column, row = np.meshgrid(np.arange(len(grid)), np.arange(rows), indexing="ij")
+        self.base_place[:, grid] = 2.0 * np.array([column, row])
+        return grid
 
-    def _base_key(self, step: Ints) -> Floats:
-        """Place in the numbering of the base's half-columns, `step` counted from the joint.
+    def _base_keys(self, column: Floats, row: Floats) -> Floats:
+        """Place in the numbering of the base's unknowns, half-columns from the joint and half-rows up.
 
-        Two of them go between two columns of the wall, starting at the middle of the joint, so that neither
-        arm waits for the other.
+        Two half-columns go between two columns of the wall, starting at the middle of the joint, so that
+        neither arm waits for the other. Where the joint has many rows, the base is numbered in waves from its
+        upper corner instead, as the wall is from the brim: each half-row of the wall takes a wave with it.
         """
         assert self.joint is not None
-        middle = float(self.joint[0] + self.joint[1])
-        pair = (step + 1) // 2
-        return np.asarray(middle - 0.5 - 2.0 * (pair - 1) - 0.1 * (step % 2 == 0))
+        low, high = self.joint
+        if high - low <= BASE_CELLS:
+            pair = (column + 1) // 2
+            return np.array([low + high - 0.5 - 2.0 * (pair - 1) - 0.1 * (column % 2 == 0), row])
+        return np.array([2.0 * high - np.maximum(2.0 * (high - low) - row, column), row - column - 1e4])
 
     # -- the mesh --------------------------------------------------------------------------------------------
 
@@ -183,12 +183,10 @@ class Assembler:
 
     def _unknown_keys(self, grid: MeshQuad, basis: Basis) -> Floats:
         keys = self._spread(grid, basis, self.keys)
-        if self.joint is not None and self.order == 2:
-            cells = np.arange(self.base_first_cell, grid.t.shape[1])
-            between = self._base_key(2 * self.base_cell_column + 1)
-            keys[0, basis.interior_dofs[0, cells]] = between
-            for local in (0, 2):
-                keys[0, basis.facet_dofs[0, grid.t2f[local, cells]]] = between
+        if self.joint is not None:
+            column, row = self._spread(grid, basis, self.base_place)
+            inside = column > 0.0
+            keys[:, inside] = self._base_keys(column[inside], row[inside])
         return keys
 
     def _regions(self) -> dict[str, Ints]:

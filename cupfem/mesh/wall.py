@@ -57,8 +57,9 @@ def default_fractions(meridian: Meridian, fineness: float = 1.0) -> dict[str, Fl
     """Lines across each layer: at least two cells (one in a coating), more in the layers that take longest
     to warm."""
     counts = {layer.name: 1 if layer.thickness < THIN_COATING else 2 for layer in meridian.layers}
-    while sum(counts.values()) < LEAST_CELLS_ACROSS:
-        slowest = max(meridian.layers, key=lambda layer: _warming_time(layer) / counts[layer.name] ** 2)
+    even = [layer for layer in meridian.layers if layer.rings is None]
+    while sum(counts[layer.name] for layer in even) < LEAST_CELLS_ACROSS:
+        slowest = max(even, key=lambda layer: _warming_time(layer) / counts[layer.name] ** 2)
         counts[slowest.name] += 1
     return {
         name: np.linspace(0.0, 1.0, max(1, round(count * fineness)) + 1) for name, count in counts.items()
@@ -87,8 +88,8 @@ def _subdivide(meridian: Meridian, heights: Floats, fineness: float) -> Floats:
 
 
 def base_cells(fineness: float) -> int:
-    """Cells through the base."""
-    return max(1, round(BASE_CELLS * fineness))
+    """Cells through the base: above fineness 2 more of them, but fewer than across the wall, for the band."""
+    return max(1, round(min(BASE_CELLS * fineness, max(BASE_CELLS, fineness))))
 
 
 class Wall:
