@@ -34,6 +34,9 @@ Ints = NDArray[np.int_]
 Conductivity = float | Callable[[Floats], Floats]
 Surroundings = float | Callable[[Floats, float, Any], Any]
 """A temperature [degC], or a function of height `[point]`, time and the lumped state."""
+Feeds = Callable[[Mapping[str, Floats], Floats, Any], Floats]
+"""Rates per area `[unknown, point]` that drink and headspace receive over an edge, in the order of their
+unknowns, from the fluxes by film, the surface temperatures and the lumped state."""
 Window = Callable[[Any, float], tuple[float, float]]
 """Lower and upper height [m] of the part of an edge that counts, from the lumped state and the time."""
 
@@ -69,7 +72,9 @@ class Exchange:
     """Heat exchange on an edge: films by ledger name, all to the same surroundings, over the part that
     `window` gives.
 
-    The films may depend on the lumped state (the wetted height sets the length of the drink's film).
+    The films may depend on the lumped state (the wetted height sets the length of the drink's film). With
+    `to_drink` all the heat goes to the drink's enthalpy, the second of its unknowns; `feeds` tells anything
+    else that drink and headspace receive.
     """
 
     edge: str
@@ -77,6 +82,7 @@ class Exchange:
     surroundings: Surroundings
     window: Window | None = None
     to_drink: bool = False
+    feeds: Feeds | None = None
 
 
 @dataclass(frozen=True, eq=False)
@@ -363,11 +369,26 @@ class EdgeExchange:
         taken, entry = self._pattern.positions(points.dofs.T)
         np.add.at(data, entry, matrices.ravel()[taken])
 
-    def slope(self, points: EdgePoints, surface: Floats, lumped: Any, time: float) -> Floats:
-        """Slope of the whole heat flux over surface temperature [W/(m2 K)], at least zero."""
-        above = _total(self.fluxes(points, surface + SLOPE_STEP, lumped, time))
-        below = _total(self.fluxes(points, surface - SLOPE_STEP, lumped, time))
-        return np.maximum((above - below) / (2.0 * SLOPE_STEP), 0.0)
+    def fed(self, fluxes: Mapping[str, Floats], surface: Floats, lumped: Any) -> Floats | None:
+        """What drink and headspace receive per area `[unknown, point]`; None where they receive nothing."""
+        if self.exchange.feeds is not None:
+            return self.exchange.feeds(fluxes, surface, lumped)
+        if self.exchange.to_drink:
+            heat = _total(fluxes)
+            return np.array([np.zeros(len(heat)), heat])
+        return None
+
+    def slopes(
+        self, points: EdgePoints, surface: Floats, lumped: Any, time: float
+    ) -> tuple[Floats, Floats | None]:
+        """Slopes over surface temperature: of the whole heat flux [W/(m2 K)], at least zero, and of `fed`."""
+        above = self.fluxes(points, surface + SLOPE_STEP, lumped, time)
+        below = self.fluxes(points, surface - SLOPE_STEP, lumped, time)
+        slope = np.maximum((_total(above) - _total(below)) / (2.0 * SLOPE_STEP), 0.0)
+        more = self.fed(above, surface + SLOPE_STEP, lumped)
+        less = self.fed(below, surface - SLOPE_STEP, lumped)
+        fed = None if more is None or less is None else (more - less) / (2.0 * SLOPE_STEP)
+        return slope, fed
 
 
 def _same(one: float, other: float) -> bool:

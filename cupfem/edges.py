@@ -10,34 +10,51 @@ from __future__ import annotations
 import math
 from dataclasses import dataclass
 from itertools import pairwise
-from typing import ClassVar, Literal
+from typing import ClassVar, Literal, Protocol
 
 import numpy as np
 
 from cupfem.cup import Cup, Layer
 from cupfem.films import (
+    DEFAULT_CLOSURE,
     STEFAN_BOLTZMANN,
+    TABLE_RESISTANCE,
     CavityAir,
+    Condensation,
     DrinkConvection,
     Film,
+    FilmSum,
     FixedFilm,
     ForcedConvection,
+    Hole,
+    HorizontalPlate,
     MixedConvection,
     NaturalConvectionPlate,
     Radiation,
+    RadiationTo,
     Recessed,
+    Stirred,
     SurfaceClosure,
+    TableContact,
+    ThickTable,
     Values,
     closure,
     disk_length,
 )
 from cupfem.films.base import fourth_power_difference
 from cupfem.gaps import Gap
-from cupfem.serving import PRESSURE, NamedFilm, Serving
+from cupfem.serving import PRESSURE, NamedFilm, Serving, SurfaceFilm
 from cupfem.serving import FixedFilm as FixedEntry
 
 TO_DRINK = "wall to drink"
+DRY_TO_HEADSPACE = "dry wall to headspace"
+DRY_TO_DRINK = "dry wall to drink"
+DRY_TO_LID = "dry wall to lid"
+CONDENSATE = "condensation on dry wall"
+INTERNAL = frozenset({TO_DRINK, DRY_TO_HEADSPACE, DRY_TO_DRINK, DRY_TO_LID, CONDENSATE})
+"""Names of heat that stays within the cup, between wall, drink, headspace and lid."""
 WATER_EMISSIVITY = 0.96  # Incropera et al., 6th ed. 2007, Table A.11, water at 300 K; from memory
+LID_EMISSIVITY = 0.90  # of a lid given by its conductance alone: plastic or board; scoping value, no source
 SHORTEST = 1e-3  # m; a shorter wetted or dry wall takes the film of this length
 
 EdgeName = Literal["wetted", "dry", "surface", "outside", "underside", "heel", "brim"]
@@ -67,19 +84,26 @@ def outside_convection(cup: Cup, serving: Serving) -> NaturalConvectionPlate | M
     """Natural convection on the outside, with the air stream of the room where there is one."""
     diameter = mean_outside_diameter(cup)
     length, lean = _along(cup, 0.0, cup.height), cup.half_taper_angle
-    natural = NaturalConvectionPlate(length, lean=lean, diameter=diameter, pressure=PRESSURE)
-    speed = serving.room.air_speed
-    return MixedConvection(natural, ForcedConvection(speed, diameter, PRESSURE)) if speed else natural
+    speed, pressure = serving.room.air_speed, serving.room.pressure
+    entry = serving.films.outside
+    local = isinstance(entry, NamedFilm) and entry.correlation.startswith("local")
+    natural = NaturalConvectionPlate(length, lean=lean, diameter=diameter, local=local, pressure=pressure)
+    return MixedConvection(natural, ForcedConvection(speed, diameter, pressure)) if speed else natural
 
 
-def wetted_films(cup: Cup, serving: Serving, level: float) -> Films:
+def carrier_films(serving: Serving) -> Films:
+    """Film between the outside of the wall and a carrier; none without one."""
+    return {"carrier": FixedFilm(serving.carrier.coefficient)} if serving.carrier else {}
+
+
+def wetted_films(cup: Cup, serving: Serving, level: float, stirred: bool = False) -> Films:
     """Film between wall and drink, for a level above the table [m]."""
-    return _drink_films(serving, "wall", _along(cup, cup.floor, level), cup.half_taper_angle)
+    return _drink_films(serving, "wall", _along(cup, cup.floor, level), cup.half_taper_angle, stirred)
 
 
-def floor_films(cup: Cup, serving: Serving) -> Films:
+def floor_films(cup: Cup, serving: Serving, stirred: bool = False) -> Films:
     """Film between the upper face of the base and the drink."""
-    return _drink_films(serving, "base", disk_length(2.0 * cup.inner_radius(cup.floor)), 0.0)
+    return _drink_films(serving, "base", disk_length(2.0 * cup.inner_radius(cup.floor)), 0.0, stirred)
 
 
 def dry_films(cup: Cup, serving: Serving, level: float, emissivity: float | None = None) -> Films:
@@ -96,26 +120,119 @@ def dry_films(cup: Cup, serving: Serving, level: float, emissivity: float | None
         emissivity = cup.emissivity(cup.stack(cup.height)[0], "inner")
     below, mouth = cup.inner_radius(cup.height - dry), cup.inner_radius(cup.height)
     share = emissivity * wall_to_mouth(below, mouth, dry)
-    length = _along(cup, cup.height - dry, cup.height)
-    plate = NaturalConvectionPlate(length, lean=cup.half_taper_angle, pressure=PRESSURE)
+    plate = _dry_plate(cup, serving, dry)
     return {"dry wall convection": plate, "dry wall radiation": Radiation(share)}
 
 
-def underside_films(cup: Cup, serving: Serving) -> Films:
-    """Film below the base; none on an open tube."""
+class UnderLid(Protocol):
+    """What the dry wall sees under a lid: temperatures [degC], vapour pressure [Pa], level [m]."""
+
+    @property
+    def level(self) -> float: ...
+    @property
+    def present(self) -> bool: ...
+    @property
+    def temperature(self) -> float: ...
+    @property
+    def vapour_pressure(self) -> float: ...
+    @property
+    def lid(self) -> float: ...
+
+
+def lidded_films(cup: Cup, serving: Serving, inside: UnderLid, emissivity: float) -> Films:
+    """Films on the inside of the wall above the level under a lid: to the gas, with vapour that condenses,
+    and radiation to drink and lid, each by its mean view factor. A fixed film stays as it is."""
+    entry = serving.films.dry
+    if not isinstance(entry, NamedFilm):
+        return {"dry wall": FixedFilm(entry.coefficient)}
+    dry = max(cup.height - max(inside.level, cup.floor), SHORTEST)
+    below, mouth = cup.inner_radius(cup.height - dry), cup.inner_radius(cup.height)
+    wall = (below + mouth) * math.hypot(dry, mouth - below)
+    to_drink = (1.0 - disk_to_disk(below, mouth, dry)) * below * below / wall if inside.present else 0.0
+    plate = _dry_plate(cup, serving, dry)
+    drink = inside.temperature if inside.present else 0.0
+    return {
+        DRY_TO_HEADSPACE: plate,
+        CONDENSATE: Condensation(plate, inside.vapour_pressure, serving.room.pressure),
+        DRY_TO_DRINK: RadiationTo(emissivity * WATER_EMISSIVITY * to_drink, drink),
+        DRY_TO_LID: RadiationTo(
+            emissivity * lid_emissivity(cup, serving) * wall_to_mouth(below, mouth, dry), inside.lid
+        ),
+    }
+
+
+def lid_emissivity(cup: Cup, serving: Serving) -> float:
+    """Emissivity of a lid's faces [-]."""
+    lid = serving.lid
+    if lid is None or lid.conductance is not None:
+        return LID_EMISSIVITY
+    return cup.material(lid.material).emissivity.value
+
+
+def lid_films(cup: Cup, serving: Serving) -> Films:
+    """Films from the outer face of the lid to the room, on the area of the mouth."""
+    lid, pressure = serving.lid, serving.room.pressure
+    if lid is not None and lid.conductance is not None:
+        return {"lid": FixedFilm(lid.conductance)}
+    length = disk_length(2.0 * cup.inner_radius(cup.height))
+    plate = HorizontalPlate(length, "up", pressure=pressure)
+    return {"lid convection": plate, "lid radiation": Radiation(lid_emissivity(cup, serving))}
+
+
+def lid_resistance(cup: Cup, serving: Serving) -> float:
+    """Resistance through the lid [m2 K/W]; zero where its conductance counts it."""
+    lid = serving.lid
+    if lid is None or lid.conductance is not None:
+        return 0.0
+    return lid.thickness / cup.material(lid.material).conductivity_through.value
+
+
+def lid_holes(serving: Serving) -> tuple[Hole, ...]:
+    """Holes of the lid."""
+    return tuple(Hole(area) for area in serving.lid.openings) if serving.lid else ()
+
+
+def table_under(cup: Cup, serving: Serving, since: float = 0.0) -> float | ThickTable:
+    """Resistance of the table [m2 K/W], or a thick table on which the cup stands since a time [s]."""
+    table = serving.table
+    if table.material is None:
+        return TABLE_RESISTANCE if table.resistance is None else table.resistance
+    found = cup.material(table.material)
+    conductivity = found.conductivity_through.value
+    heat_capacity = found.density.value * found.specific_heat.value
+    return ThickTable(conductivity, conductivity / heat_capacity, cup.inner_radius(0.0), since)
+
+
+def underside_films(cup: Cup, serving: Serving, on_table: bool = True, since: float = 0.0) -> Films:
+    """Film below the base, on the table since a time [s] or in the air; none on an open tube."""
     base, entry = cup.base_disc, serving.films.underside
     if base is None:
         return {}
     if not isinstance(entry, NamedFilm):
         return {"underside": FixedFilm(entry.coefficient)}
-    emissivity = cup.material(base.material).emissivity.value
-    return {"underside": CavityAir(base.recess, base_emissivity=emissivity, pressure=PRESSURE)}
+    emissivity, pressure = cup.material(base.material).emissivity.value, serving.room.pressure
+    if not on_table:
+        length = disk_length(2.0 * cup.inner_radius(base.recess))
+        plate = HorizontalPlate(length, "down", pressure=pressure)
+        return {"underside": FilmSum((plate, Radiation(emissivity)))}
+    table = table_under(cup, serving, since)
+    return {"underside": CavityAir(base.recess, emissivity, table_resistance=table, pressure=pressure)}
 
 
-def end_films(serving: Serving, edge: Literal["heel", "brim"]) -> Films:
-    """Film on the wall's lower or upper end; none where it is insulated."""
-    entry = getattr(serving.films, edge)
-    return {} if isinstance(entry, NamedFilm) else {edge: FixedFilm(entry.coefficient)}
+def heel_films(cup: Cup, serving: Serving, on_table: bool = True, since: float = 0.0) -> Films:
+    """Film on the wall's lower end; none where it is insulated or in the air."""
+    entry = serving.films.heel
+    if not isinstance(entry, NamedFilm):
+        return {"heel": FixedFilm(entry.coefficient)}
+    if entry.correlation == "insulated" or not on_table:
+        return {}
+    return {"heel": TableContact(table_under(cup, serving, since))}
+
+
+def brim_films(serving: Serving) -> Films:
+    """Film on the wall's upper end; none where it is insulated."""
+    entry = serving.films.brim
+    return {} if isinstance(entry, NamedFilm) else {"brim": FixedFilm(entry.coefficient)}
 
 
 def surface_films(serving: Serving) -> Films:
@@ -129,13 +246,24 @@ def surface_films(serving: Serving) -> Films:
 def surface_closure(serving: Serving) -> SurfaceClosure | None:
     """Closure of evaporation and convection for a surface below a rim; None for a fixed film."""
     entry = serving.films.surface
-    return Recessed(closure(entry.correlation)) if isinstance(entry, NamedFilm) else None
+    if not isinstance(entry, SurfaceFilm):
+        return None
+    return Recessed(closure(entry.correlation), entry.freeboard_factor, serving.drink.foam_factor)
 
 
-def gap_of(cup: Cup, index: int, height: float | None = None) -> Gap:
+def headspace_closure(serving: Serving) -> SurfaceClosure:
+    """Closure from the surface to a headspace: no freeboard factor; for a fixed film, which no lid goes with,
+    the default."""
+    entry = serving.films.surface
+    name = entry.correlation if isinstance(entry, SurfaceFilm) else DEFAULT_CLOSURE
+    return Recessed(closure(name), 1.0, serving.drink.foam_factor)
+
+
+def gap_of(cup: Cup, index: int, height: float | None = None, pressure: float = PRESSURE) -> Gap:
     """The gap that layer `index` of the cup, a gas, makes between its neighbours.
 
-    Their emissivities are those at a height [m] on the inside face; left out: at the gap's middle.
+    Their emissivities are those at a height [m] on the inside face; left out: at the gap's middle. Its gas is
+    at the pressure of the room [Pa] unless the cup gives one.
     """
     layer = cup.layer[index]
     low, high = cup.layer_range(layer)
@@ -146,7 +274,7 @@ def gap_of(cup: Cup, index: int, height: float | None = None) -> Gap:
         cup.emissivity(stack[place + 1], "inner"),
         contact_fraction=layer.contact_fraction,
         contact_conductance=layer.contact_conductance,
-        pressure=PRESSURE if layer.pressure is None else layer.pressure,
+        pressure=pressure if layer.pressure is None else layer.pressure,
     )
 
 
@@ -225,11 +353,19 @@ def wall_to_mouth(bottom: float, mouth: float, depth: float) -> float:
     return seen * mouth * mouth / wall
 
 
-def _drink_films(serving: Serving, place: Literal["wall", "base"], length: float, lean: float) -> Films:
+def _drink_films(
+    serving: Serving, place: Literal["wall", "base"], length: float, lean: float, stirred: bool
+) -> Films:
     entry = serving.films.wetted
     if not isinstance(entry, NamedFilm):
         return {TO_DRINK: FixedFilm(entry.coefficient)}
-    return {TO_DRINK: DrinkConvection(serving.drink.liquid, length, place, lean)}
+    still = DrinkConvection(serving.drink.liquid, length, place, lean)
+    return {TO_DRINK: Stirred(still, serving.drink.stirred_coefficient) if stirred else still}
+
+
+def _dry_plate(cup: Cup, serving: Serving, dry: float) -> NaturalConvectionPlate:
+    length = _along(cup, cup.height - dry, cup.height)
+    return NaturalConvectionPlate(length, lean=cup.half_taper_angle, pressure=serving.room.pressure)
 
 
 def _along(cup: Cup, low: float, high: float) -> float:

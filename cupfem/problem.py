@@ -7,19 +7,20 @@ from __future__ import annotations
 
 from collections.abc import Callable, Mapping
 from dataclasses import dataclass
+from functools import cache
 from typing import Any
 
 import numpy as np
 from numpy.typing import NDArray
 
 from cupfem import edges
-from cupfem.conduction import Conditions, Conduction, Exchange, GasLayer, Solid
+from cupfem.conduction import Conditions, Conduction, Exchange, GasLayer, Solid, Window
 from cupfem.cup import Cup
-from cupfem.drink import Ambient, Drink, Lumped, Surface
+from cupfem.drink import Ambient, Drink, Headspace, Lid, Lumped, Surface
 from cupfem.edges import TO_DRINK
 from cupfem.errors import InputError, nearest
 from cupfem.films import Film
-from cupfem.fluids import air_density, air_specific_heat, vapour_pressure
+from cupfem.fluids import STANDARD_PRESSURE, air_density, air_specific_heat, vapour_pressure
 from cupfem.gaps import Gap
 from cupfem.march import Section, System
 from cupfem.materials import Material
@@ -27,12 +28,14 @@ from cupfem.meridian import Meridian
 from cupfem.meridian import build as build_meridian
 from cupfem.mesh import SectionMesh
 from cupfem.mesh import build as build_mesh
-from cupfem.serving import PRESSURE, Serving, check, fill_volume
+from cupfem.serving import COINCIDENT, Serving, check, fill_volume
 
 Floats = NDArray[np.float64]
 Overrides = Mapping[str, Film]
 
 EDGES = ("wetted", "dry", "outside", "underside", "heel", "brim")
+FIRST_VOLUME = 10e-6
+"""Of a pour that takes a while, what is there at time zero [m3]: there has to be a drink to begin with."""
 GAS_TEMPERATURE = 50.0
 """Temperature [degC] at which the heat capacity of the gas in a gap is taken: a thousandth of the board's."""
 
@@ -49,14 +52,36 @@ class Problem:
     start: Floats
 
     def enter(self, time: float) -> None:
-        """Set what is constant from a break on: room and steady drinking."""
+        """Set what is constant from a break on: room, lid, stirring, table, steady drinking and pouring."""
         self.system.ambient = ambient_at(self.serving, time)
-        drink = self.system.drink
+        drink, serving = self.system.drink, self.serving
         assert drink is not None
-        flows = [
-            flow for flow, start, end in self.serving.steady_drinking() if start - 1e-9 <= time < end - 1e-9
-        ]
-        self.system.drink = drink.with_drinking(sum(flows))
+        flows = [flow for flow, start, end in serving.steady_drinking() if _within(time, start, end)]
+        self.system.drink = drink.with_flows(sum(flows), _pouring(self.cup, serving, time))
+
+    def jump(self, state: Floats, time: float) -> tuple[Floats, dict[str, float]]:
+        """The state after all that happens at a moment [s], sips first, and the heat that left with it [J].
+
+        Enters that moment, and settles the headspace in it. Raises InputError for a refill that does not fit
+        below the brim.
+        """
+        self.enter(time)
+        drink, serving = self.system.drink, self.serving
+        assert drink is not None
+        heats = {"sips": 0.0, "refills": 0.0}
+        state = state.copy()
+        here = self.system.drink_state(state)
+        for at, volume in serving.sips():
+            if abs(at - time) < COINCIDENT:
+                here[:], heat = drink.sip(here, volume)
+                heats["sips"] += heat
+        for at, volume, temperature in serving.refills():
+            if abs(at - time) < COINCIDENT:
+                here[:], heat = drink.refill(here, volume, temperature)
+                heats["refills"] -= heat
+        if any(abs(at - time) < COINCIDENT for at, _ in serving.lid_moves()):
+            here[:] = drink.guessed(here, self.system.ambient)
+        return self.system.consistent(state, time), {name: heat for name, heat in heats.items() if heat}
 
 
 def build(cup: Cup, serving: Serving, fineness: float = 1.0, films: Overrides | None = None) -> Problem:
@@ -68,20 +93,65 @@ def build(cup: Cup, serving: Serving, fineness: float = 1.0, films: Overrides | 
     films = _checked(films or {})
     meridian = build_meridian(cup)
     mesh = build_mesh(meridian, fineness)
-    conditions = Conditions(tuple(exchanges(cup, serving, mesh, films)))
-    conduction = Conduction(mesh, properties(cup, mesh), conditions)
-    drink = Drink(serving.drink.liquid, meridian, drink_surface(serving))
-    system = System([Section(conduction)], drink, ambient_at(serving, 0.0))
-    level = meridian.level(fill_volume(cup, serving))
+    headspace = headspace_of(cup, serving)
+    conditions = Conditions(tuple(exchanges(cup, serving, mesh, films, headspace)))
+    conduction = Conduction(mesh, properties(cup, mesh, serving.room.pressure), conditions)
+    drink = Drink(serving.drink.liquid, meridian, drink_surface(serving), headspace=headspace)
+    ambient = ambient_at(serving, 0.0)
+    system = System([Section(conduction)], drink, ambient)
     wall = np.full(mesh.size, serving.start_temperature)
-    start = system.state([wall], drink.start(serving.drink.temperature, level))
-    return Problem(cup, serving, meridian, mesh, system, start)
+    start = system.state(
+        [wall], drink.start(serving.drink.temperature, _first_level(meridian, serving), ambient)
+    )
+    return Problem(cup, serving, meridian, mesh, system, system.consistent(start, 0.0))
+
+
+def _first_level(meridian: Meridian, serving: Serving) -> float:
+    """Level [m] at time zero: the whole fill, or the first of a pour that takes a while."""
+    volume = fill_volume(meridian, serving)
+    return meridian.level(min(FIRST_VOLUME, 0.1 * volume) if serving.drink.pour else volume)
+
+
+def _pouring(cup: Cup, serving: Serving, time: float) -> tuple[float, float]:
+    """Volume flow [m3/s] and temperature [degC] of the pour at a time [s]."""
+    duration, volume = serving.drink.pour, fill_volume(cup, serving)
+    if duration is None or not _within(time, 0.0, duration):
+        return 0.0, serving.drink.temperature
+    return (volume - min(FIRST_VOLUME, 0.1 * volume)) / duration, serving.drink.temperature
+
+
+def _within(time: float, start: float, end: float) -> bool:
+    return start - COINCIDENT <= time < end - COINCIDENT
 
 
 def ambient_at(serving: Serving, time: float) -> Ambient:
-    """The room from a time [s] on."""
+    """Room and circumstances from a time [s] on."""
     temperature = float(serving.room.temperature_at(time))
-    return Ambient(temperature, float(vapour_pressure(temperature, serving.room.humidity)), PRESSURE)
+    since, place = serving.stand_at(time)
+    return Ambient(
+        temperature,
+        float(vapour_pressure(temperature, serving.room.humidity)),
+        serving.room.pressure,
+        serving.lid_at(time),
+        serving.stirred_at(time),
+        place == "table",
+        since,
+    )
+
+
+def headspace_of(cup: Cup, serving: Serving) -> Headspace | None:
+    """The headspace of a serving that has a lid."""
+    if serving.lid is None:
+        return None
+    lid = Lid(
+        edges.lid_films(cup, serving),
+        edges.lid_resistance(cup, serving),
+        edges.lid_emissivity(cup, serving),
+        edges.lid_holes(serving),
+        float(np.pi * cup.inner_radius(cup.height) ** 2),
+        cup.height,
+    )
+    return Headspace(serving.drink.liquid, edges.headspace_closure(serving), lid, edges.WATER_EMISSIVITY)
 
 
 def drink_surface(serving: Serving) -> Surface:
@@ -96,19 +166,19 @@ def drink_surface(serving: Serving) -> Surface:
 # -- regions -------------------------------------------------------------------------------------------------
 
 
-def properties(cup: Cup, mesh: SectionMesh) -> dict[str, Solid | GasLayer]:
-    """Properties of each region of a cup's mesh."""
+def properties(
+    cup: Cup, mesh: SectionMesh, pressure: float = STANDARD_PRESSURE
+) -> dict[str, Solid | GasLayer]:
+    """Properties of each region of a cup's mesh, in a room of a pressure [Pa]."""
     given: dict[str, Solid | GasLayer] = {}
     for index, layer in enumerate(cup.layer):
         material = cup.material(layer.material)
         if material.kind == "gas":
-            pressure = PRESSURE if layer.pressure is None else layer.pressure
-            given[layer.name] = GasLayer(
-                edges.gap_of(cup, index), _air(pressure), edges.gap_height(cup, index)
-            )
+            gap = edges.gap_of(cup, index, pressure=pressure)
+            given[layer.name] = GasLayer(gap, _air(gap.pressure), edges.gap_height(cup, index))
         else:
             given[layer.name] = solid(material)
-            given[f"{layer.name} pocket"] = GasLayer(_pocket(cup, index), _air(PRESSURE))
+            given[f"{layer.name} pocket"] = GasLayer(_pocket(cup, index), _air(pressure))
     if cup.base_disc is not None:
         given["base"] = solid(cup.material(cup.base_disc.material))
     return {name: given[name] for name in mesh.regions}
@@ -136,41 +206,56 @@ def _pocket(cup: Cup, index: int) -> Gap:
 # -- edges ---------------------------------------------------------------------------------------------------
 
 
-def exchanges(cup: Cup, serving: Serving, mesh: SectionMesh, films: Overrides) -> list[Exchange]:
+def exchanges(
+    cup: Cup, serving: Serving, mesh: SectionMesh, films: Overrides, headspace: Headspace | None = None
+) -> list[Exchange]:
     """Heat exchange on all edges of a cup's mesh."""
     return [
-        *_inside(cup, serving, mesh, films),
+        *_inside(cup, serving, mesh, films, headspace),
         *_outside(cup, serving, mesh, films),
         *_below(cup, serving, mesh, films),
-        *_ends(serving, films),
+        *_ends(cup, serving, films),
     ]
 
 
-def _inside(cup: Cup, serving: Serving, mesh: SectionMesh, films: Overrides) -> list[Exchange]:
-    """Below the level to the drink, above it to the room."""
-    around = _surroundings(serving, "dry", films)
+def _inside(
+    cup: Cup, serving: Serving, mesh: SectionMesh, films: Overrides, headspace: Headspace | None
+) -> list[Exchange]:
+    """Below the level to the drink, above it to the room or to the headspace."""
+    wetted = _films(
+        films,
+        "wetted",
+        TO_DRINK,
+        lambda drink: edges.wetted_films(cup, serving, drink.level, drink.ambient.stirred),
+    )
     out = []
-    wetted = _films(films, "wetted", TO_DRINK, lambda drink: edges.wetted_films(cup, serving, drink.level))
     for part, layer in _layers(cup, mesh, "inside"):
-        emissivity = edges.emissivity_of(cup, layer)
-        dry = _films(
-            films,
-            "dry",
-            "dry wall",
-            lambda drink, e=emissivity: edges.dry_films(cup, serving, drink.level, e),
-        )
-        out += [
-            Exchange(part, wetted, _drink_temperature, _below_level, to_drink=True),
-            Exchange(part, dry, around, _above_level),
-        ]
+        out.append(Exchange(part, wetted, _drink_temperature, _below_level, to_drink=True))
+        out.append(_dry(cup, serving, films, headspace, part, edges.emissivity_of(cup, layer)))
     if cup.base_disc is not None:
-        floor = _films(films, "wetted", TO_DRINK, edges.floor_films(cup, serving))
-        dry = _films(films, "dry", "dry wall", edges.dry_films(cup, serving, cup.floor))
-        out += [
-            Exchange("floor", floor, _drink_temperature, _below_level, to_drink=True),
-            Exchange("floor", dry, around, _above_level),
-        ]
+        floor = _films(
+            films, "wetted", TO_DRINK, lambda drink: edges.floor_films(cup, serving, drink.ambient.stirred)
+        )
+        emissivity = cup.material(cup.base_disc.material).emissivity.value
+        out.append(Exchange("floor", floor, _drink_temperature, _below_level, to_drink=True))
+        out.append(_dry(cup, serving, films, headspace, "floor", emissivity))
     return out
+
+
+def _dry(
+    cup: Cup, serving: Serving, films: Overrides, headspace: Headspace | None, part: str, emissivity: float
+) -> Exchange:
+    """A part of the inside above the level; under a lid it feeds drink, headspace and lid."""
+
+    def chosen(drink: Lumped) -> Mapping[str, Film]:
+        if drink.lidded:
+            return edges.lidded_films(cup, serving, drink, emissivity)
+        return edges.dry_films(cup, serving, drink.level, emissivity)
+
+    around = _surroundings(serving, "dry", films)
+    if "dry" in films or headspace is None or not callable(around):
+        return Exchange(part, _films(films, "dry", "dry wall", chosen), around, _above_level)
+    return Exchange(part, chosen, _gas_temperature, _above_level, feeds=headspace.feeds)
 
 
 def _outside(cup: Cup, serving: Serving, mesh: SectionMesh, films: Overrides) -> list[Exchange]:
@@ -178,30 +263,49 @@ def _outside(cup: Cup, serving: Serving, mesh: SectionMesh, films: Overrides) ->
     out = []
     for part, layer in _layers(cup, mesh, "outside"):
         standard = edges.outside_films(cup, serving, edges.emissivity_of(cup, layer))
-        out.append(Exchange(part, _films(films, "outside", "outside", standard), around))
+        chosen = _films(films, "outside", "outside", standard)
+        if serving.carrier is None:
+            out.append(Exchange(part, chosen, around))
+            continue
+        end = serving.carrier.height
+        held = edges.carrier_films(serving)
+        out.append(Exchange(part, held, _room_temperature, _constant(-np.inf, end)))
+        out.append(Exchange(part, chosen, around, _constant(end, np.inf)))
     return out
 
 
 def _below(cup: Cup, serving: Serving, mesh: SectionMesh, films: Overrides) -> list[Exchange]:
     """Underside of the base; a film that is given acts on the inside of the skirt too, which is insulated
     otherwise."""
-    standard = edges.underside_films(cup, serving)
-    if not standard:
+    if cup.base_disc is None:
         return []
     around = _surroundings(serving, "underside", films)
-    chosen = _films(films, "underside", "underside", standard)
+    chosen = _films(films, "underside", "underside", _standing(edges.underside_films, cup, serving))
     given = "underside" in films or edges.surroundings_of(serving, "underside") is not None
     parts = ["underside", "skirt"] if given and mesh.edges["skirt"].shape[1] else ["underside"]
     return [Exchange(part, chosen, around) for part in parts]
 
 
-def _ends(serving: Serving, films: Overrides) -> list[Exchange]:
+def _ends(cup: Cup, serving: Serving, films: Overrides) -> list[Exchange]:
+    """Heel and brim where they are not insulated."""
     out = []
-    for edge in ("heel", "brim"):
-        chosen = _films(films, edge, edge, edges.end_films(serving, edge))
-        if chosen:
-            out.append(Exchange(edge, chosen, _surroundings(serving, edge, films)))
+    if "heel" in films or edges.heel_films(cup, serving):
+        chosen = _films(films, "heel", "heel", _standing(edges.heel_films, cup, serving))
+        out.append(Exchange("heel", chosen, _surroundings(serving, "heel", films)))
+    if "brim" in films or edges.brim_films(serving):
+        chosen = _films(films, "brim", "brim", edges.brim_films(serving))
+        out.append(Exchange("brim", chosen, _surroundings(serving, "brim", films)))
     return out
+
+
+def _standing(make: Callable[..., edges.Films], cup: Cup, serving: Serving) -> Any:
+    """Films of an edge that meets the table, made anew only where table or air changes."""
+    made = cache(lambda on_table, since: make(cup, serving, on_table, since))
+    return lambda drink: made(drink.ambient.on_table, drink.ambient.since)
+
+
+def _constant(low: float, high: float) -> Window:
+    return lambda drink, time: (low, high)
 
 
 def _films(films: Overrides, edge: str, name: str, standard: Any) -> Any:
@@ -220,6 +324,10 @@ def _layers(cup: Cup, mesh: SectionMesh, edge: str) -> list[tuple[str, Any]]:
 
 def _room_temperature(height: Floats, time: float, drink: Lumped) -> float:
     return drink.ambient.temperature
+
+
+def _gas_temperature(height: Floats, time: float, drink: Lumped) -> float:
+    return drink.headspace if drink.lidded else drink.ambient.temperature
 
 
 def _drink_temperature(height: Floats, time: float, drink: Lumped) -> float:

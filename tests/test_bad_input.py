@@ -181,9 +181,58 @@ SERVINGS = [
     ('duration = "10 m"', 'duration: "10 m": "m" is a unit of length, not of time'),
     ('titel = "x"', 'titel: unknown key; did you mean "title"?'),
     # the format knows these, but nothing reads them yet
-    ('[lid]\nsip_hole = "1.2 cm^2"', "lid: not supported yet"),
     ("[grip]", "line 1: grip: not supported yet; leave it out"),
     ("handle = true", "handle: not axisymmetric"),
+    # lid, refills, stirring, table, carrier, altitude
+    ('altitude = "2 km"', "line 1: altitude: it belongs in [room]"),
+    ('[room]\naltitude = "20 km"', 'room.altitude: "20 km": must be from 0 m to 9 km'),
+    (
+        '[room]\naltitude = "3 km"\n[drink]\ntemperature = "92 degC"',
+        'drink.temperature: "92 degC": boils at 89.97 degC',
+    ),
+    ('[lid]\nsip_hole = "0 cm^2"', 'lid.sip_hole: "0 cm^2": must be more than zero'),
+    ('[lid]\nhole = "1 cm^2"', 'lid.hole: unknown key; did you mean "sip_hole"?'),
+    (
+        '[lid]\nconductance = "8 W/(m^2 K)"\nthickness = "1 mm"',
+        "lid.thickness: would change nothing: the conductance is given",
+    ),
+    (
+        '[lid]\n[films]\nsurface = { coefficient = "60 W/(m^2 K)", surroundings = "22 degC" }',
+        "lid: would change nothing: films.surface is one fixed film; leave out [lid], or films.surface",
+    ),
+    (
+        '[lid]\n[films]\nsurface = { correlation = "Shah", freeboard_factor = 0.8 }',
+        "films.surface.freeboard_factor: would change nothing: the lid is on all the time",
+    ),
+    ('[[event]]\nlid = "on"\nat = "1 min"', "event: there is no lid to move; write a [lid] table"),
+    (
+        '[lid]\n[[event]]\nlid = "on"\nat = "1 min"\n[[event]]\nlid = "on"\nat = "2 min"',
+        'event.2.lid: "on": would change nothing: it is so already',
+    ),
+    (
+        '[[event]]\nstand = "table"\nat = "1 min"',
+        'event.1.stand: "table": would change nothing: it is so already',
+    ),
+    ('[[event]]\nrefill = "5 cl"\nat = "11 min"', 'event.1.at: "11 min": after the end of the serving'),
+    (
+        '[[event]]\nrefill = "5 cl"\nat = "1 min"\ntemperature = "101 degC"',
+        'event.1.temperature: "101 degC": boils at 99.97 degC',
+    ),
+    ('[[event]]\nstir = "1 min"\nat = "570 s"', 'event.1.stir: "10.5 min": after the end of the serving'),
+    (
+        '[drink]\nstirred_coefficient = "2000 W/(m^2 K)"',
+        "drink.stirred_coefficient: would change nothing: nothing stirs the drink",
+    ),
+    (
+        '[drink]\nstirred = "10 s"\n[films]\nwetted = { coefficient = "400 W/(m^2 K)" }',
+        "drink.stirred: would change nothing: films.wetted is a fixed film",
+    ),
+    ('[drink]\nfoam_factor = 0', "drink.foam_factor: 0: must be more than zero"),
+    (
+        '[table]\nmaterial = "wood"\nresistance = "0.1 m^2 K/W"',
+        "table.material: given together with resistance; keep one of the two",
+    ),
+    ('[carrier]\ncoefficient = "30 W/(m^2 K)"', 'carrier.height: missing; write height = "40 mm"'),
     # drink
     ("drink = 3", "drink: 3: not a table"),
     (
@@ -388,9 +437,10 @@ def test_python_is_refused_like_a_file():
     assert refusal(lambda: Serving(drink=Drink(temperature=85.0))).startswith("drink.temperature: 85.0: ")
     assert refusal(lambda: Serving(drink={"temperature": "20 C"})).startswith('drink.temperature: "20 C": ')
     assert refusal(lambda: Serving(grip=3)) == "grip: not supported yet; leave it out"
-    assert refusal(lambda: Drink(colour="green")) == (
-        "drink.colour: unknown key; "
-        "the keys here are kind, density, specific_heat, temperature, level, volume"
+    assert refusal(lambda: Drink(sugar="two")) == (
+        "drink.sugar: unknown key; "
+        "the keys here are kind, density, specific_heat, temperature, level, volume, "
+        "pour, stirred, stirred_coefficient, foam_factor"
     )
 
 

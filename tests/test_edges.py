@@ -192,8 +192,8 @@ def test_fixed_films_replace_all_on_their_edge(cup, fixed):
     assert edges.underside_films(cup, fixed) == {"underside": FixedFilm(9.0)}
     assert edges.surface_films(fixed) == {"surface": FixedFilm(60.0)}
     assert edges.surface_closure(fixed) is None
-    assert edges.end_films(fixed, "heel") == {"heel": FixedFilm(30.0)}
-    assert edges.end_films(fixed, "brim") == {}
+    assert edges.heel_films(cup, fixed) == {"heel": FixedFilm(30.0)}
+    assert edges.brim_films(fixed) == {}
 
 
 def test_fixed_films_lead_to_their_own_surroundings(serving, fixed):

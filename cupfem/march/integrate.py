@@ -105,6 +105,7 @@ class March:
             If the step falls below `SMALLEST_STEP` or the number of steps passes `MOST_STEPS`.
         """
         state = self.system.with_fixed(np.array(state, dtype=float), start)
+        state = self.system.consistent(state, start)
         slope, powers = self._first_slope(state, start)
         time, step = start, self.fixed_step or min(first_step, end - start)
         while time < end - 1e-12 * max(1.0, abs(end)):
@@ -150,6 +151,8 @@ class March:
         loads, powers = system.loads(state, time)
         rates = loads - system.conducted(state)
         slope = rates.copy()
+        if system.drink is not None:
+            system.drink_state(slope)[system.drink.capacities == 0.0] = 0.0
         for section, part in zip(system.sections, system.slices, strict=True):
             conduction = section.conduction
             load = rates[part].copy()

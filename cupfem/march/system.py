@@ -14,10 +14,11 @@ from numpy.typing import NDArray
 
 from cupfem.conduction import Conduction
 from cupfem.drink import Ambient, Drink, Lumped
-from cupfem.edges import TO_DRINK
+from cupfem.errors import ConvergenceError
 from cupfem.linear import Factor, Operator
 
 Floats = NDArray[np.float64]
+Ints = NDArray[np.int_]
 
 ROOM = Ambient()
 PEAK_SHARE = 0.05
@@ -25,6 +26,8 @@ PEAK_SHARE = 0.05
 moves over few cells."""
 BORDER_STEP = 1e-5
 """Step, in scales of the drink's state, of the difference quotients that fill the border."""
+MOST_CONSISTENT, LARGEST_CORRECTION, CONSISTENT = 60, 50.0, 1e-9
+"""Steps of `System.consistent`, the largest one and the last one, in scales of the unknowns (kelvins)."""
 
 
 @dataclass(frozen=True, eq=False)
@@ -73,7 +76,7 @@ class System:
         return state[self.slices[index]]
 
     def drink_state(self, state: Floats) -> Floats:
-        """Mass [kg] and enthalpy [J] of the drink; empty without one."""
+        """The drink's unknowns: mass [kg], enthalpy [J], and those of a headspace; empty without a drink."""
         return state[self._walls :]
 
     def lumped(self, state: Floats) -> Lumped:
@@ -102,6 +105,35 @@ class System:
                 state[part][section.conduction.fixed] = section.conduction.fixed_values(time)
         return state
 
+    def consistent(self, state: Floats, time: float) -> Floats:
+        """The state with its algebraic unknowns solved for, as after a start or a break.
+
+        Newton steps with difference quotients, each at most a share of what the drink allows.
+
+        Raises
+        ------
+        ConvergenceError
+            If they do not settle.
+        """
+        if self.drink is None or self.drink.capacities.all():
+            return state
+        state = state.copy()
+        places = self._walls + np.flatnonzero(self.drink.capacities == 0.0)
+        scales = self.drink.scales(self.drink_state(state))[places - self._walls]
+        for _ in range(MOST_CONSISTENT):
+            here = self.loads(state, time)[0][places]
+            slopes = np.empty((len(places), len(places)))
+            for column, (place, scale) in enumerate(zip(places, BORDER_STEP * scales, strict=True)):
+                moved = state.copy()
+                moved[place] += scale
+                slopes[:, column] = (self.loads(moved, time)[0][places] - here) / scale
+            change = np.linalg.solve(slopes, here)
+            size = float(np.max(np.abs(change) / scales))
+            state[places] -= change * min(1.0, LARGEST_CORRECTION / max(size, 1e-300))
+            if size < CONSISTENT:
+                return state
+        raise ConvergenceError(f"the headspace does not settle at t = {time:.6g} s")
+
     def free(self, residual: Floats) -> Floats:
         """A residual with the rows of prescribed temperatures cleared (in place)."""
         if self.constrained:
@@ -116,6 +148,7 @@ class System:
         lumped = self.lumped(state)
         powers: dict[str, float] = {}
         out = np.empty(len(state))
+        received = np.zeros(len(state) - self._walls)
         for section, part in zip(self.sections, self.slices, strict=True):
             conduction, wall = section.conduction, state[part]
             load = conduction.supplied(time)
@@ -123,13 +156,17 @@ class System:
             for exchange in conduction.exchanges:
                 points = exchange.points(lumped, time)
                 if len(points.weight):
-                    fluxes = exchange.fluxes(points, points.interpolate(wall), lumped, time)
+                    surface = points.interpolate(wall)
+                    fluxes = exchange.fluxes(points, surface, lumped, time)
+                    fed = exchange.fed(fluxes, surface, lumped)
+                    if fed is not None:
+                        received[: len(fed)] += section.share * (fed @ points.weight)
                     exchange.add_load(load, points, fluxes)
                     add_terms(powers, exchange.powers(points, fluxes), section.share)
             add_terms(powers, conduction.supplied_power(time), -section.share)
             out[part] = load
         if self.drink is not None:
-            rates, terms = self.drink.rates(self.drink_state(state), lumped, time, powers.get(TO_DRINK, 0.0))
+            rates, terms = self.drink.rates(self.drink_state(state), lumped, time, received)
             out[self._walls :] = rates
             add_terms(powers, terms, 1.0)
         return out, powers
@@ -139,11 +176,12 @@ class System:
         return self.by_section([section.conduction.stiffness for section in self.sections], state, 0.0)
 
     def capacity_times(self, state: Floats) -> Floats:
-        """M T of the walls; the drink's state itself."""
-        return self.by_section([section.conduction.mass for section in self.sections], state, 1.0)
+        """M T of the walls; the drink's state itself, zero for its algebraic unknowns."""
+        capacities = self.drink.capacities if self.drink else 1.0
+        return self.by_section([section.conduction.mass for section in self.sections], state, capacities)
 
-    def by_section(self, operators: Sequence[Operator], state: Floats, drink: float) -> Floats:
-        """Operators applied to their sections; the drink's own state times a factor."""
+    def by_section(self, operators: Sequence[Operator], state: Floats, drink: float | Floats) -> Floats:
+        """Operators applied to their sections; the drink's own state times a factor for each unknown."""
         out = np.empty(len(state))
         for operator, part in zip(operators, self.slices, strict=True):
             out[part] = operator @ state[part]
@@ -206,6 +244,7 @@ class Linearised:
         weight: float,
     ):
         self.system, self.weight = system, weight
+        self._received = len(system.drink_state(states[1]))
         lumped = tuple(system.lumped(state) for state in states)
         self.constant: list[Operator] = []
         self._factors: list[Factor] = []
@@ -214,17 +253,19 @@ class Linearised:
         for index, section in enumerate(system.sections):
             wall = system.wall(states[1], index)
             passed.append(section.share * self._add_section(section, wall, lumped[1], times[1]))
-            moving = _MovingLevel(section, (lumped[0], lumped[2]), (times[0], times[2]), self._factors[-1])
+            moving = _MovingLevel(
+                section, (lumped[0], lumped[2]), (times[0], times[2]), self._factors[-1], self._received
+            )
             moving.refer_to(wall, lumped[1], times[1], weight)
             self._moving.append(moving)
         self._border = self._make_border(states[1], times[1], passed)
 
     def _add_section(self, section: Section, wall: Floats, lumped: Lumped, time: float) -> Floats:
-        """Factorise a section's matrix; returns the slope of the heat that it passes to the drink."""
+        """Factorise a section's matrix; returns the slopes `[unknown, dof]` of what the drink gets."""
         conduction = section.conduction
         constant = conduction.mass.data + self.weight * conduction.stiffness.data
         self.constant.append(conduction.pattern.operator(constant))
-        data, passed = _film_slopes(conduction, wall, lumped, time)
+        data, passed = _film_slopes(conduction, wall, lumped, time, self._received)
         matrix = constant + self.weight * (data + conduction.varying_data(wall))
         self._factors.append(conduction.pattern.factor(matrix, conduction.fixed))
         return passed
@@ -234,7 +275,7 @@ class Linearised:
         if system.drink is None:
             return None
         columns = self._border_columns(state, time)
-        self._own = np.eye(columns.shape[1]) + columns[-columns.shape[1] :]
+        self._own = np.diag(system.drink.capacities) + columns[-columns.shape[1] :]
         answers = [
             factor.solve(columns[part]) for factor, part in zip(self._factors, system.slices, strict=True)
         ]
@@ -254,14 +295,14 @@ class Linearised:
         return columns
 
     def _inverse(self, rows: list[Floats], answers: list[Floats]) -> Floats:
-        """Inverse Schur complement; the walls act on the drink's enthalpy, the second of its unknowns."""
-        small = self._own.copy()
-        small[1] -= sum(row @ answer for row, answer in zip(rows, answers, strict=True))
+        """Inverse Schur complement."""
+        small = self._own - sum(row @ answer for row, answer in zip(rows, answers, strict=True))
         return np.asarray(np.linalg.inv(small))
 
     def constant_times(self, state: Floats) -> Floats:
         """(M + w K) T without films and varying conductivities."""
-        return self.system.by_section(self.constant, state, 1.0)
+        drink = self.system.drink
+        return self.system.by_section(self.constant, state, drink.capacities if drink else 1.0)
 
     def at_stage(self, state: Floats, time: float) -> Border | None:
         """The border with matrix and rows corrected for the wetted part of a stage."""
@@ -290,7 +331,7 @@ class Linearised:
         if border is not None:
             rest = system.drink_state(residual).copy()
             for row, part in zip(border.rows, system.slices, strict=True):
-                rest[1] -= row @ out[part]
+                rest -= row @ out[part]
             lumped = border.inverse @ rest
             for answer, part in zip(border.answers, system.slices, strict=True):
                 out[part] -= answer @ lumped
@@ -307,8 +348,14 @@ class _MovingLevel:
     """
 
     def __init__(
-        self, section: Section, lumped: tuple[Lumped, Lumped], times: tuple[float, float], factor: Factor
+        self,
+        section: Section,
+        lumped: tuple[Lumped, Lumped],
+        times: tuple[float, float],
+        factor: Factor,
+        received: int,
     ):
+        self._received = received
         self._exchanges = []
         unknowns = [np.zeros(0, dtype=int)]
         for exchange in section.conduction.exchanges:
@@ -331,9 +378,9 @@ class _MovingLevel:
             self._reference = self._films(wall, lumped, time)
 
     def correction(self, wall: Floats, lumped: Lumped, time: float) -> tuple[Floats | None, Floats]:
-        """G for a state, and the change of the slope of the heat passed to the drink at the unknowns E."""
+        """G for a state, and the change of the slopes of what the drink receives at the unknowns E."""
         if not self.present:
-            return None, np.zeros(0)
+            return None, np.zeros((self._received, 0))
         films, heat = self._films(wall, lumped, time)
         change = self._weight * (films - self._reference[0])
         gain = np.linalg.solve(np.eye(len(change)) + change @ self._own, change)
@@ -346,40 +393,48 @@ class _MovingLevel:
         return np.asarray(solution - self._answers @ (gain @ solution[self._unknowns]))
 
     def add_to(self, row: Floats, values: Floats) -> Floats:
-        """A row with values added at the unknowns E."""
+        """Rows with values added at the unknowns E."""
         row = row.copy()
-        row[self._unknowns] += values
+        row[:, self._unknowns] += values
         return row
 
     def _films(self, wall: Floats, lumped: Lumped, time: float) -> tuple[Floats, Floats]:
         size = len(self._unknowns)
-        matrix, heat = np.zeros((size, size)), np.zeros(size)
+        matrix, heat = np.zeros((size, size)), np.zeros((self._received, size))
         for exchange, span in self._exchanges:
             points = exchange.points_within(span, lumped, time)
             if len(points.weight):
-                slope = points.weight * exchange.slope(points, points.interpolate(wall), lumped, time)
+                slope, fed = exchange.slopes(points, points.interpolate(wall), lumped, time)
+                slope = points.weight * slope
                 place = np.minimum(np.searchsorted(self._unknowns, points.dofs), size - 1)
                 shape = points.shape * (self._unknowns[place] == points.dofs)
                 local = shape[:, :, None] * shape[:, None, :] * slope[:, None, None]
                 np.add.at(matrix, (place[:, :, None], place[:, None, :]), local)
-                if exchange.exchange.to_drink:
-                    np.add.at(heat, place, shape * slope[:, None])
+                _add_received(heat, place, shape * points.weight[:, None], fed)
         return matrix, heat
 
 
-def _film_slopes(conduction: Conduction, wall: Floats, lumped: Lumped, time: float) -> tuple[Floats, Floats]:
-    """Film slopes as stored entries, and the derivative of the heat passed to the drink over the wall's
-    unknowns."""
+def _film_slopes(
+    conduction: Conduction, wall: Floats, lumped: Lumped, time: float, unknowns: int
+) -> tuple[Floats, Floats]:
+    """Film slopes as stored entries, and the derivatives `[unknown, dof]` of what the drink receives over the
+    wall's unknowns."""
     data = np.zeros(conduction.pattern.entries)
-    passed = np.zeros(conduction.mesh.size)
+    passed = np.zeros((unknowns, conduction.mesh.size))
     for exchange in conduction.exchanges:
         points = exchange.points(lumped, time)
         if len(points.weight):
-            slope = points.weight * exchange.slope(points, points.interpolate(wall), lumped, time)
-            exchange.add_slope(data, points, slope)
-            if exchange.exchange.to_drink:
-                np.add.at(passed, points.dofs, points.shape * slope[:, None])
+            slope, fed = exchange.slopes(points, points.interpolate(wall), lumped, time)
+            exchange.add_slope(data, points, points.weight * slope)
+            _add_received(passed, points.dofs, points.shape * points.weight[:, None], fed)
     return data, passed
+
+
+def _add_received(out: Floats, place: Ints, shape: Floats, fed: Floats | None) -> None:
+    """Add slopes `[unknown, point]` of what the drink receives to its rows (in place)."""
+    for row, rates in zip(out, [] if fed is None else fed, strict=False):
+        if rates.any():
+            np.add.at(row, place, shape * rates[:, None])
 
 
 def add_terms(total: dict[str, float], terms: Mapping[str, float], factor: float = 1.0) -> None:

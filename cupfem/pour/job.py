@@ -133,14 +133,9 @@ def _regrip(grip: Grip, state: Floats, time: float, recorder: Recorder) -> Float
 
 
 def _sip(problem: Problem, state: Floats, time: float, recorder: Recorder) -> Floats:
-    """The state after all single sips of a moment."""
-    system = problem.system
-    for moment, volume in problem.serving.sips():
-        if abs(moment - time) < 1e-9 and system.drink is not None:
-            state = state.copy()
-            left, heat = system.drink.sip(system.drink_state(state), volume)
-            system.drink_state(state)[:] = left
-            recorder.add_heat({"sips": heat})
+    """The state after all that happens at a moment: sips, refills, the lid."""
+    state, heats = problem.jump(state, time)
+    recorder.add_heat(heats)
     return state
 
 

@@ -7,7 +7,7 @@ from collections.abc import Mapping
 import numpy as np
 from numpy.typing import NDArray
 
-from cupfem.edges import TO_DRINK
+from cupfem.edges import INTERNAL, TO_DRINK
 from cupfem.march import Step, System, add_terms
 from cupfem.run import Faces, Ledger, Series
 
@@ -66,7 +66,7 @@ class Recorder:
     def ledger(self, before: Mapping[str, float], after: Mapping[str, float]) -> Ledger:
         """The balance between two states' stored heats."""
         stored = {name: after[name] - before[name] for name in before if name != "drink"}
-        out = {name: value for name, value in self._energies.items() if name != TO_DRINK}
+        out = {name: value for name, value in self._energies.items() if name not in INTERNAL}
         drink = after.get("drink", 0.0) - before.get("drink", 0.0)
         return Ledger(out, stored, drink, self._energies.get(TO_DRINK, 0.0))
 

@@ -2,41 +2,35 @@
 
 from __future__ import annotations
 
+import math
 from collections.abc import Mapping
 from pathlib import Path
-from typing import Annotated, Any, ClassVar, Protocol, Self
+from typing import Annotated, Any, ClassVar, Self
 
 from pydantic import Field, model_validator
 
 from cupfem import fluids
-from cupfem.errors import InputError
-from cupfem.inputs import InputFile, Positive, json_schema, refused, within
-from cupfem.quantities import Time, format_quantity
-from cupfem.serving.films import Films
-from cupfem.serving.pads import Pad, check_places, check_times
-from cupfem.serving.tables import Drink, Drinking, Event, Room, Sip, Start, Target
+from cupfem.inputs import InputFile, Positive, json_schema, within
+from cupfem.quantities import Time
+from cupfem.serving import checks
+from cupfem.serving.events import Drinking, Event, LidMove, Refill, Sip, Stand, Stir
+from cupfem.serving.films import Films, FixedFilm, NamedFilm
+from cupfem.serving.pads import Pad
+from cupfem.serving.pads import check_times as check_pads
+from cupfem.serving.tables import Carrier, Drink, Lid, Room, Start, Tabletop, Target
 
-FREEBOARD = 10e-3  # m; from brim to level where the file tells neither level nor volume
 PRESSURE = fluids.STANDARD_PRESSURE  # Pa
-COLDEST_DRINK = 0.0  # degC; ice is not modelled
-COLDEST_ROOM, HOTTEST_ROOM = -40.0, 60.0  # degC
-
-
-class Space(Protocol):
-    """What a serving needs to know of the cup (lengths m, volumes m3)."""
-
-    @property
-    def height(self) -> float: ...
-    @property
-    def floor(self) -> float: ...
-    def volume(self, level: float) -> float: ...
+COINCIDENT = 1e-9  # s; moments nearer than this are one
 
 
 class Serving(InputFile):
     """What happens to a cup from the pour on."""
 
-    not_yet: ClassVar[tuple[str, ...]] = ("lid", "grip", "altitude")
-    never: ClassVar[Mapping[str, str]] = {"handle": "not axisymmetric: a handle cannot be modelled"}
+    not_yet: ClassVar[tuple[str, ...]] = ("grip",)
+    never: ClassVar[Mapping[str, str]] = {
+        "handle": "not axisymmetric: a handle cannot be modelled",
+        "altitude": "it belongs in [room]",
+    }
 
     title: str = "Serving"
     """What reports call the serving."""
@@ -48,8 +42,14 @@ class Serving(InputFile):
     """Where."""
     start: Start = Field(default_factory=Start)
     """The state before the pour."""
+    lid: Lid | None = None
+    """On the mouth; left out: an open cup."""
+    table: Tabletop = Field(default_factory=Tabletop)
+    """Below the cup."""
+    carrier: Carrier | None = None
+    """Around the lower part of the cup; left out: none."""
     event: tuple[Event, ...] = ()
-    """What is drunk when."""
+    """What happens on the way: sips, drinking, refills, lid on or off, stirring, table or air."""
     pad: tuple[Pad, ...] = ()
     """Fingers on the wall."""
     target: Target | None = None
@@ -63,11 +63,20 @@ class Serving(InputFile):
         given = self.start.temperature
         return float(self.room.temperature_at(0.0)) if given is None else given
 
+    # -- what happens when -----------------------------------------------------------------------------------
+
     def sips(self) -> tuple[tuple[float, float], ...]:
         """All single sips as (time [s], volume [m3]), in the order of time."""
         taken = [(time, event.sip) for event in self.event if isinstance(event, Sip)
-                 for time in _sip_times(event, self.duration)]  # fmt: skip
+                 for time in event.times(self.duration)]  # fmt: skip
         return tuple(sorted(taken))
+
+    def refills(self) -> tuple[tuple[float, float, float], ...]:
+        """All refills as (time [s], volume [m3], temperature [degC]), in the order of time."""
+        usual = self.drink.temperature
+        found = [(event.at, event.refill, usual if event.temperature is None else event.temperature)
+                 for event in self.event if isinstance(event, Refill)]  # fmt: skip
+        return tuple(sorted(found))
 
     def steady_drinking(self) -> tuple[tuple[float, float, float], ...]:
         """All steady drinking as (volume flow [m3/s], start [s], end [s])."""
@@ -75,15 +84,52 @@ class Serving(InputFile):
                  for event in self.event if isinstance(event, Drinking)]  # fmt: skip
         return tuple((event.drinking / (end - event.from_), event.from_, end) for event, end in spans)
 
-    def drunk(self) -> float:
-        """Volume of all sips and all drinking [m3]."""
-        steady = sum(flow * (end - start) for flow, start, end in self.steady_drinking())
-        return sum(volume for _, volume in self.sips()) + steady
+    def drunk(self, until: float = math.inf) -> float:
+        """Volume of all sips and all drinking before a time [m3]."""
+        spans = ((flow, start, min(end, until)) for flow, start, end in self.steady_drinking())
+        steady = sum(flow * max(end - start, 0.0) for flow, start, end in spans)
+        return sum(volume for time, volume in self.sips() if time < until) + steady
+
+    def stirring(self) -> tuple[tuple[float, float], ...]:
+        """Spans (start, end) in which the drink moves [s]: by a spoon, after the pour, after refills."""
+        spans = [(event.at, event.at + event.stir) for event in self.event if isinstance(event, Stir)]
+        if self.drink.stirred is not None:
+            spans.append((0.0, (self.drink.pour or 0.0) + self.drink.stirred))
+            spans += [(time, time + self.drink.stirred) for time, *_ in self.refills()]
+        return tuple(sorted(spans))
+
+    def lid_moves(self) -> tuple[tuple[float, str], ...]:
+        """All moves of the lid as (time [s], "on" or "off"), in the order of time."""
+        return tuple(sorted((event.at, event.lid) for event in self.event if isinstance(event, LidMove)))
+
+    def stands(self) -> tuple[tuple[float, str], ...]:
+        """Where the cup is, as (time [s] from which, "table" or "air"), in the order of time."""
+        moves = [(event.at, event.stand) for event in self.event if isinstance(event, Stand)]
+        return ((0.0, self.start.stand), *sorted(moves))
+
+    def lid_at(self, time: float) -> bool:
+        """Whether the lid is on from a time [s] on."""
+        moves = self.lid_moves()
+        if self.lid is None:
+            return False
+        before = [move for at, move in moves if at <= time + COINCIDENT]
+        return before[-1] == "on" if before else not moves or moves[0][1] == "off"
+
+    def stirred_at(self, time: float) -> bool:
+        """Whether the drink moves from a time [s] on."""
+        return any(start <= time + COINCIDENT < end for start, end in self.stirring())
+
+    def stand_at(self, time: float) -> tuple[float, str]:
+        """Since when [s] the cup is where it is from a time [s] on, and where."""
+        return [entry for entry in self.stands() if entry[0] <= time + COINCIDENT][-1]
 
     def breaks(self) -> tuple[float, ...]:
         """Times within the serving at which something jumps [s], rising."""
         times = {start for start, _ in self.room.steps} | {time for time, _ in self.sips()}
         times |= {time for _, start, end in self.steady_drinking() for time in (start, end)}
+        times |= {time for span in self.stirring() for time in span}
+        times |= {time for time, *_ in self.refills()} | {self.drink.pour or 0.0}
+        times |= {time for time, _ in (*self.lid_moves(), *self.stands())}
         times |= {time for pad in self.pad for time in (pad.pick_up, pad.until(self.duration))}
         return tuple(sorted(time for time in times if 0.0 < time < self.duration))
 
@@ -94,15 +140,32 @@ class Serving(InputFile):
             reasons["drink.kind"] = "density and specific_heat are given"
         if self.drink.volume is not None:
             reasons["drink.level"] = "the volume is given"
+        if not self.stirring():
+            reasons["drink.stirred_coefficient"] = "nothing stirs the drink"
+        if self.lid is not None and self.lid.conductance is not None:
+            reasons |= {f"lid.{key}": "the conductance is given" for key in ("material", "thickness")}
+        return reasons | self._idle_films()
+
+    def _idle_films(self) -> dict[str, str]:
+        reasons: dict[str, str] = {}
+        if isinstance(self.films.surface, FixedFilm):
+            reasons["drink.foam_factor"] = "films.surface is a fixed film"
+        elif self.lid_at(0.0) and not self.lid_moves():
+            reasons["films.surface.freeboard_factor"] = "the lid is on all the time"
+        contact = isinstance(self.films.heel, NamedFilm) and self.films.heel.correlation != "insulated"
+        if isinstance(self.films.underside, FixedFilm) and not contact:
+            why = "films.underside is a fixed film and the heel has no contact with the table"
+            reasons |= {f"table.{key}": why for key in ("resistance", "material")}
         return reasons
 
     @model_validator(mode="after")
     def _consistent(self) -> Self:
         self.refuse_idle()
-        _check_times(self)
-        _check_drink(self)
-        _check_room(self)
-        check_times(self.pad, self.duration)
+        checks.check_times(self)
+        checks.check_drink(self)
+        checks.check_room(self)
+        checks.check_lid(self)
+        check_pads(self.pad, self.duration)
         return self
 
 
@@ -114,122 +177,3 @@ def load_serving(path: str | Path) -> Serving:
 def serving_schema() -> dict[str, Any]:
     """JSON Schema of a serving file."""
     return json_schema(Serving, "cupfem serving file")
-
-
-def fill_volume(cup: Space, serving: Serving) -> float:
-    """Volume of drink at the pour [m3]."""
-    if serving.drink.volume is not None:
-        return serving.drink.volume
-    level = cup.height - FREEBOARD if serving.drink.level is None else serving.drink.level
-    return cup.volume(level) if level > cup.floor else 0.0
-
-
-def check(cup: Space, serving: Serving) -> None:
-    """Refuse, by InputError, a serving that this cup cannot take.
-
-    `cup` is a Cup or anything else with its height, floor and volume below a level.
-    """
-    _check_fill(cup, serving.drink)
-    _check_drunk(fill_volume(cup, serving), serving)
-    check_places(cup, serving.pad)
-    between = serving.target.between if serving.target else None
-    if between is not None and between[1] > cup.height:
-        why = f"above the brim at {_mm(cup.height)}"
-        raise InputError("target.between", _mm(between[1]), why, f'write at most "{_mm(cup.height)}"')
-
-
-def _check_fill(cup: Space, drink: Drink) -> None:
-    if drink.volume is not None:
-        if drink.volume >= cup.volume(cup.height):
-            why = f"the cup is brimful with {_ml(cup.volume(cup.height))}"
-            raise InputError("drink.volume", _ml(drink.volume), why, "write less")
-        return
-    level = cup.height - FREEBOARD if drink.level is None else drink.level
-    if level >= cup.height:
-        why = f"not below the brim at {_mm(cup.height)}"
-        raise InputError("drink.level", _mm(level), why, f'write for example "{_mm(cup.height - FREEBOARD)}"')
-    if level <= cup.floor:
-        why = f"no drink: the floor of the cup is at {_mm(cup.floor)}"
-        raise InputError("drink.level", _mm(level), why, "write a higher level")
-
-
-def _check_drunk(filled: float, serving: Serving) -> None:
-    if serving.drunk() > filled:
-        why = f"more than the {_ml(filled)} poured"
-        raise InputError("event", _ml(serving.drunk()), why, "write smaller or fewer sips, or less drinking")
-
-
-def _check_times(serving: Serving) -> None:
-    ends = {"room.temperature": serving.room.steps[-1][0]}
-    if serving.target is not None:
-        ends["target.until"] = serving.target.until or 0.0
-    for number, event in enumerate(serving.event, 1):
-        path = f"event.{number}"
-        if isinstance(event, Sip):
-            ends |= {f"{path}.first": event.first, f"{path}.last": event.last or 0.0}
-            ends[f"{path}.count"] = _last_of_count(event)
-        else:
-            ends |= {f"{path}.from": event.from_, f"{path}.to": event.to or 0.0}
-            if event.to is None and event.from_ == serving.duration:
-                raise refused("not before the end of the serving", "begin earlier", f"{path}.from")
-    for path, end in ends.items():
-        if end > serving.duration:
-            why = f"after the end of the serving at {_seconds(serving.duration)}"
-            raise refused(why, "write an earlier time, or a longer duration", path, _seconds(end))
-
-
-def _check_drink(serving: Serving) -> None:
-    temperature, boiling = serving.drink.temperature, fluids.boiling_point(PRESSURE)
-    if temperature >= boiling:
-        why = f"boils at {_celsius(boiling)}: boiling is not modelled"
-        raise refused(why, "write a lower temperature", "drink.temperature", _celsius(temperature))
-    if temperature <= COLDEST_DRINK:
-        why = "ice is not modelled"
-        raise refused(why, "write a temperature above 0 degC", "drink.temperature", _celsius(temperature))
-
-
-def _check_room(serving: Serving) -> None:
-    for _, room in serving.room.steps:
-        if not COLDEST_ROOM <= room <= HOTTEST_ROOM:
-            why = f"not a room from {_celsius(COLDEST_ROOM)} to {_celsius(HOTTEST_ROOM)}"
-            raise refused(why, "write a temperature in between", "room.temperature", _celsius(room))
-        _check_dew(serving, room, "drink.temperature", serving.drink.temperature)
-    _check_dew(serving, serving.room.steps[0][1], "start.temperature", serving.start_temperature)
-
-
-def _check_dew(serving: Serving, room: float, path: str, temperature: float) -> None:
-    if serving.room.humidity == 0.0:
-        return
-    dew_point = float(fluids.dew_point(room, serving.room.humidity))
-    if temperature < dew_point:
-        why = f"below the room's dew point of {_celsius(dew_point)}; outside condensation is not modelled"
-        instead = "write a higher temperature, or a lower room.humidity"
-        raise refused(why, instead, path, _celsius(temperature))
-
-
-def _sip_times(event: Sip, duration: float) -> list[float]:
-    if event.every is None:
-        return [event.first]
-    end = duration if event.last is None else event.last
-    count = int((end - event.first) / event.every * (1.0 + 1e-12)) + 1 if event.count is None else event.count
-    return [event.first + index * event.every for index in range(count)]
-
-
-def _last_of_count(event: Sip) -> float:
-    return event.first + (event.count - 1) * event.every if event.count and event.every else 0.0
-
-
-def _mm(length: float) -> str:
-    return format_quantity(length, "length", digits=4)
-
-
-def _ml(volume: float) -> str:
-    return format_quantity(volume, "volume")
-
-
-def _celsius(temperature: float) -> str:
-    return format_quantity(temperature, "temperature", digits=4)
-
-
-def _seconds(time: float) -> str:
-    return format_quantity(time, "time", digits=4)

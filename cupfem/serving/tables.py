@@ -1,4 +1,4 @@
-"""Drink, room, start, events and target: the tables of a serving file but for its films."""
+"""Drink, room, start, lid, table, carrier, target: the tables of a serving file but for events and films."""
 
 from __future__ import annotations
 
@@ -13,16 +13,22 @@ from pydantic import Field, Tag, model_validator
 from cupfem import fluids
 from cupfem.inputs import NotNegative, Positive, Table, refused, tag, within
 from cupfem.quantities import (
+    Area,
     Density,
+    FilmCoefficient,
     Fraction,
     Length,
     SpecificHeat,
     Speed,
     Temperature,
+    ThermalResistance,
     Time,
     Volume,
-    format_quantity,
 )
+
+STIRRED_COEFFICIENT = 1500.0
+"""Of the moving drink after pouring or stirring [W/(m2 K)]: 1000 to 3000, scoping estimate, no source."""
+THINNEST_LID, LID_THICKNESS = "0.1 mm", 0.45e-3
 
 Kind = Literal["water", "coffee", "milk drink", "broth", "thick soup"]
 
@@ -45,6 +51,14 @@ class Drink(Table):
     """Height of the surface above the table at the pour."""
     volume: Annotated[Volume, Positive] | None = None
     """Poured, instead of level."""
+    pour: Annotated[Time, Positive, within("1 s", "10 min", "time")] | None = None
+    """How long the pour takes, from time zero on; left out: at once."""
+    stirred: Annotated[Time, Positive] | None = None
+    """How long after the pour, and after each refill, pour and spoon keep the drink moving."""
+    stirred_coefficient: Annotated[FilmCoefficient, Positive] = STIRRED_COEFFICIENT
+    """Film between a stirred drink and the wall, blended with natural convection."""
+    foam_factor: Annotated[Fraction, Positive] = 1.0
+    """Share of evaporation and convection that a layer of foam or cream on the surface lets through."""
 
     @property
     def liquid(self) -> fluids.Liquid:
@@ -82,6 +96,13 @@ class Room(Table):
     """Relative humidity."""
     air_speed: Annotated[Speed, NotNegative] = 0.1
     """Past the cup."""
+    altitude: Annotated[Length, NotNegative, within("0 m", "9 km", "length")] = 0.0
+    """Above the sea: sets the pressure, and with it boiling, evaporation and convection."""
+
+    @property
+    def pressure(self) -> float:
+        """Pressure of the air [Pa]."""
+        return fluids.standard_pressure(self.altitude)
 
     @property
     def steps(self) -> tuple[tuple[float, float], ...]:
@@ -112,69 +133,60 @@ class Start(Table):
 
     temperature: Temperature | None = None
     """Of the cup; left out: that of the room."""
+    stand: Literal["table", "air"] = "table"
+    """Where the cup is at the pour."""
 
 
-class Sip(Table):
-    """An `[[event]]` of single sips, each taken at once."""
+class Lid(Table):
+    """The `[lid]` table: a lid on the mouth, on from the pour unless the first event of the lid says "on"."""
 
-    place: ClassVar[str] = "event"
+    place: ClassVar[str] = "lid"
+    left_out: ClassVar[Mapping[str, str]] = {"sip_hole": "closed", "vent": "none"}
 
-    wanted: ClassVar[Mapping[str, str]] = {"sip": 'write sip = "15 ml", or drinking = "180 ml"'}
+    sip_hole: Annotated[Area, Positive] | None = None
+    """Area of the hole to drink from; left out: closed."""
+    vent: Annotated[Area, Positive] | None = None
+    """Area of a second hole; left out: none."""
+    conductance: Annotated[FilmCoefficient, NotNegative] | None = None
+    """From the inside of the lid to the room, on the area of the mouth, instead of material and thickness."""
+    material: str = "polystyrene"
+    """Of the lid: one of the library's, or of the cup file's own."""
+    thickness: Annotated[Length, Positive, within(THINNEST_LID, "10 mm", "length")] = LID_THICKNESS
+    """Of the lid. The default is a scoping value, no source."""
 
-    sip: Annotated[Volume, Positive]
-    """Volume of each."""
-    first: Annotated[Time, Positive] = Field(examples=["2 min"])
-    """Time of the first."""
-    every: Annotated[Time, Positive, within("1 s", "48 h", "time")] | None = None
-    """From one to the next; left out: one sip only."""
-    count: Annotated[int, Field(strict=True, ge=1)] | None = None
-    """How many; left out: until `last`, or the end of the serving."""
-    last: Annotated[Time, Positive] | None = None
-    """No sip after this time, instead of count."""
+    @property
+    def openings(self) -> tuple[float, ...]:
+        """Areas of the holes [m2]."""
+        return tuple(area for area in (self.sip_hole, self.vent) if area is not None)
+
+
+class Tabletop(Table):
+    """The `[table]` table: what the cup stands on."""
+
+    place: ClassVar[str] = "table"
+    left_out: ClassVar[Mapping[str, str]] = {"resistance": "0.0333 m^2 K/W"}
+
+    resistance: Annotated[ThermalResistance, NotNegative] | None = None
+    """From the face of the table to the room, on the area of the base."""
+    material: str | None = None
+    """Instead of resistance: of a thick table, warmed by the cup from the moment it stands there."""
 
     @model_validator(mode="after")
-    def _consistent(self) -> Self:
-        for key in ("count", "last"):
-            if self.every is None and getattr(self, key) is not None:
-                raise refused("would change nothing: without every there is one sip", "write every too", key)
-        if self.count is not None and self.last is not None:
-            raise refused("given together with count", "keep one of the two", "last")
-        if self.last is not None and self.last < self.first:
-            raise refused(
-                "before the first sip", "write a later time", "last", format_quantity(self.last, "time")
-            )
+    def _one_way(self) -> Self:
+        if self.resistance is not None and self.material is not None:
+            raise refused("given together with resistance", "keep one of the two", "material")
         return self
 
 
-class Drinking(Table):
-    """An `[[event]]` of drinking at a steady rate."""
+class Carrier(Table):
+    """The `[carrier]` table: a holder around the lower part of the cup."""
 
-    place: ClassVar[str] = "event"
-    left_out: ClassVar[Mapping[str, str]] = {"to": "the end of the serving"}
+    place: ClassVar[str] = "carrier"
 
-    drinking: Annotated[Volume, Positive]
-    """Volume drunk in all."""
-    from_: Annotated[Time, NotNegative] = Field(default=0.0, alias="from")
-    """When it begins."""
-    to: Annotated[Time, Positive] | None = None
-    """When it ends; left out: the end of the serving."""
-
-    @model_validator(mode="after")
-    def _consistent(self) -> Self:
-        if self.to is not None and self.from_ >= self.to:
-            raise refused("not after its start", "write a later time", "to", format_quantity(self.to, "time"))
-        return self
-
-
-def _kind_of_event(value: object) -> str:
-    steady = isinstance(value, Drinking) or (isinstance(value, Mapping) and "drinking" in value)
-    return "<drinking>" if steady else "<sip>"
-
-
-Event = Annotated[
-    Annotated[Sip, Tag("<sip>")] | Annotated[Drinking, Tag("<drinking>")],
-    tag(_kind_of_event),
-]
+    height: Annotated[Length, Positive] = Field(examples=["40 mm"])
+    """Upper end above the table; below it the carrier's film replaces that of the outside."""
+    coefficient: Annotated[FilmCoefficient, NotNegative] = 30.0
+    """From the outside of the wall to a carrier at the temperature of the room. 15 to 60, no source."""
 
 
 class Target(Table):
