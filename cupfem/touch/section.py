@@ -17,6 +17,7 @@ from scipy.spatial import ConvexHull
 
 from cupfem.axisymmetry import EdgePoints, source_load
 from cupfem.conduction import Conditions, Conduction, EdgeExchange, Exchange, GasLayer, Solid
+from cupfem.cup import Cup
 from cupfem.films import Film, FixedFilm
 from cupfem.fluids import air_conductivity
 from cupfem.materials import Material, Value
@@ -133,13 +134,24 @@ def build_section(
 
 
 def snapped(problem: Problem, pad: Pad, fineness: float) -> tuple[float, float]:
-    """Heights of the pad's rims [m]: those of near stations, so that no sliver of a cell arises."""
+    """Heights of the pad's rims [m], at near stations, so that no sliver of a cell arises.
+
+    Where an outer layer ends under the pad with a step, the finger lies on the higher side and hangs free
+    beyond: the pad ends at the step.
+    """
     known = default_stations(problem.meridian, fineness)
-    ends = []
-    for rim in (pad.low, pad.high):
-        nearest = float(known[np.argmin(np.abs(known - rim))])
-        ends.append(nearest if abs(nearest - rim) < LEAST_STATION else rim)
-    return ends[0], ends[1]
+    low, high = pad.low, pad.high
+    for layer in problem.meridian.layers:
+        if low < layer.low < high and not layer.blend_low:
+            low = layer.low
+        if low < layer.high < high and not layer.blend_high:
+            high = layer.high
+    return _near(known, low), _near(known, high)
+
+
+def _near(known: Floats, rim: float) -> float:
+    nearest = float(known[np.argmin(np.abs(known - rim))])
+    return nearest if abs(nearest - rim) < LEAST_STATION else rim
 
 
 def stations_with(problem: Problem, low: float, high: float, fineness: float) -> Floats:
@@ -281,18 +293,24 @@ def _facing(mesh: SectionMesh, surface: Ints) -> Ints:
 def _conduction(
     problem: Problem, pad: Pad, skin: Skin, mesh: SectionMesh, films: Mapping[str, Film]
 ) -> Conduction:
-    tissues = {tissue.name for tissue in skin.layers}
-    wall = replace(mesh, regions={name: e for name, e in mesh.regions.items() if name not in tissues})
-    given = properties(problem.cup, wall)
-    for name, layer in given.items():
-        given[name] = pressed(layer, pad.gap_resistance) if isinstance(layer, GasLayer) else layer
-    for tissue in skin.layers:
-        given[tissue.name] = Solid(tissue.conductivity, tissue.conductivity, tissue.heat_capacity)
+    given = pad_properties(problem.cup, pad, skin, mesh)
     below = Exchange("core", {HAND: FixedFilm(skin.below)}, skin.core)
     around = exchanges(problem.cup, problem.serving, mesh, films)
     conduction = Conduction(mesh, given, Conditions((*around, below)))
     conduction.exchanges.append(Perfusion(conduction, skin))
     return conduction
+
+
+def pad_properties(cup: Cup, pad: Pad, skin: Skin, mesh: SectionMesh) -> dict[str, Solid | GasLayer]:
+    """Properties of each region of a pad's mesh: the wall with its gaps pressed together, and the tissues."""
+    tissues = {tissue.name for tissue in skin.layers}
+    wall = replace(mesh, regions={name: e for name, e in mesh.regions.items() if name not in tissues})
+    given = properties(cup, wall)
+    for name, layer in given.items():
+        given[name] = pressed(layer, pad.gap_resistance) if isinstance(layer, GasLayer) else layer
+    for tissue in skin.layers:
+        given[tissue.name] = Solid(tissue.conductivity, tissue.conductivity, tissue.heat_capacity)
+    return given
 
 
 class Perfusion(EdgeExchange):
