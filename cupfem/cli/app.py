@@ -91,11 +91,24 @@ def pour(
     ] = None,
     fineness: Fineness = 1.0,
     units: UnitSystem = "si",
+    report: Annotated[
+        bool, typer.Option("--report", help="Add report.html, one page that can be handed on.")
+    ] = False,
 ) -> None:
     """Run a serving: verdict, table, pictures, series and fields, in one folder."""
     from cupfem.cli.jobs import pour_cup
 
-    pour_cup(cup, serving, out, force=force, quiet=quiet, duration=duration, fineness=fineness, units=units)
+    pour_cup(
+        cup,
+        serving,
+        out,
+        force=force,
+        quiet=quiet,
+        duration=duration,
+        fineness=fineness,
+        units=units,
+        report=report,
+    )
 
 
 @app.command(epilog='Example: cupfem materials "cupstock board"')

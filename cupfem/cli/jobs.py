@@ -71,6 +71,7 @@ def pour_cup(
     duration: str | None,
     fineness: float,
     units: Units,
+    report: bool,
 ) -> None:
     """Run a serving, write its folder, print the headline figures."""
     started = time.perf_counter()
@@ -80,7 +81,7 @@ def pour_cup(
     loaded = time.perf_counter()
     run = _run(cup, serving, fineness, out, quiet)
     timings = {"load": loaded - started, "run": time.perf_counter() - loaded}
-    folder = write_run(run, out, name=COMMAND, force=force, figures=_pictures(units), timings=timings)
+    folder = write_run(run, out, name=COMMAND, force=force, figures=_pictures(units, report), timings=timings)
     console = Console(highlight=False)
     if not quiet:
         show_run(console, run, units)
@@ -105,11 +106,15 @@ def _run(cup: Cup, serving: Serving, fineness: float, out: str | None, quiet: bo
         raise ConvergenceError(f"{error}; the inputs are in {folder}") from error
 
 
-def _pictures(units: Units) -> Callable[[Run, Path], None]:
+def _pictures(units: Units, report: bool) -> Callable[[Run, Path], None]:
     from cupfem.figures import write_figures
 
     def write(run: Run, place: Path) -> None:
         write_figures(run, place, units)
+        if report:
+            from cupfem.report import write_report
+
+            write_report(run, place / "report.html", units)
 
     return write
 

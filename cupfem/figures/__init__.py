@@ -4,16 +4,18 @@ No figure is shown or kept by this module, no global setting of matplotlib is ch
 imported. Every function takes ``units="us"`` too.
 """
 
-from cupfem.figures.field import field_figure, field_times
+from cupfem.figures.field import field_figure, field_frames, field_times
 from cupfem.figures.files import png, svg, write_drawing, write_figures
-from cupfem.figures.heat import drink_figure, heat_figure
+from cupfem.figures.heat import drink_figure, grouped_heats, heat_figure
 from cupfem.figures.section import section_figure
 from cupfem.figures.wall import wall_history, wall_map, wall_profile
 
 __all__ = [
     "drink_figure",
     "field_figure",
+    "field_frames",
     "field_times",
+    "grouped_heats",
     "heat_figure",
     "png",
     "section_figure",

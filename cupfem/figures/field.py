@@ -2,7 +2,7 @@
 
 from __future__ import annotations
 
-from collections.abc import Sequence
+from collections.abc import Iterator, Sequence
 from dataclasses import dataclass
 from typing import Any
 
@@ -68,28 +68,38 @@ def field_figure(run: Run, times: Sequence[float] | None = None, units: Units = 
     chosen = (
         field_times(run) if times is None else [float(run.snapshot_times[_nearest(run, t)]) for t in times]
     )
-    canvas = _canvas(run, chosen, units)
-    note = (
-        "Left: true proportion, drink in its own temperature. Right: the wall unrolled and stretched across."
-    )
+    note = "Left: true proportion, drink in its own temperature. Right: the wall unrolled, stretched across."
+    return _drawn(_canvas(run, chosen, units), chosen, f"{run.cup.title}: temperature in the wall", note)
+
+
+def field_frames(run: Run, units: Units = "si", most: int = 12) -> Iterator[tuple[float, Figure]]:
+    """Time [s] and picture of the field, for snapshots up to `most`; all on one scale of temperature."""
+    stored = run.snapshot_times
+    chosen = stored[np.unique(np.round(np.linspace(0, len(stored) - 1, most)).astype(int))]
+    canvas = _canvas(run, [float(time) for time in chosen], units)
+    for time in chosen:
+        yield float(time), _drawn(canvas, [float(time)])
+
+
+def _drawn(canvas: _Canvas, times: Sequence[float], title: str = "", note: str = "") -> Figure:
+    """A panel for each time, and the colour bar."""
     tall = 3.9 / (TOP - BOTTOM) / canvas.top  # inches per shown unit
     broad = SIDE * canvas.reach * tall
     each, left = broad + 1.35, 0.75
-    figure = style.new_figure(
-        max(left + each * len(chosen) + 0.6, 7.0), 5.4, f"{run.cup.title}: temperature in the wall", note
-    )
-    for number, time in enumerate(chosen):
+    width = left + each * len(times) + 0.6
+    figure = style.new_figure(max(width, 7.0) if title else width, 5.4, title, note)
+    for number, time in enumerate(times):
         start = left + each * number
-        field = style.shown(run.snapshots[_nearest(run, time)], "temperature", units)
-        whole = _panel(figure, start, broad)
+        whole, strip = _panel(figure, start, broad), _panel(figure, start + broad + 0.08, 0.92)
+        values = canvas.run.snapshots[_nearest(canvas.run, time)]
+        field = style.shown(values, "temperature", canvas.units)
         _section(whole, canvas, field, time)
-        _strip(_panel(figure, start + broad + 0.08, 0.92), canvas, field)
-        whole.set_title(style.clock(time), size=style.NORMAL, weight="bold", loc="left")
+        _strip(strip, canvas, field)
         if number == 0:
-            whole.set_ylabel(f"height [{style.unit_sign('length', units)}]", size=style.NORMAL)
+            whole.set_ylabel(f"height [{style.unit_sign('length', canvas.units)}]", size=style.NORMAL)
         else:
             whole.tick_params(labelleft=False)
-    _colour_bar(figure, _panel(figure, left + each * len(chosen), 0.12), canvas)
+    _colour_bar(figure, _panel(figure, left + each * len(times), 0.12), canvas)
     return figure
 
 
@@ -136,6 +146,7 @@ def _section(axes: Axes, canvas: _Canvas, field: Floats, time: float) -> None:
     whole = TriMesh(canvas.whole, array=field, cmap=canvas.colours, norm=canvas.norm)
     axes.add_collection(whole, autolim=False)
     _drink(axes, canvas, time)
+    axes.set_title(style.clock(time), size=style.NORMAL, weight="bold", loc="left")
     axes.set_xlim(0.0, SIDE * canvas.reach)
     _upright(axes, canvas)
     axes.xaxis.set_major_locator(MaxNLocator(3, prune="upper"))
