@@ -370,5 +370,5 @@ def _dry_plate(cup: Cup, serving: Serving, dry: float) -> NaturalConvectionPlate
 
 def _along(cup: Cup, low: float, high: float) -> float:
     """Length along the inside face between two heights [m], at least `SHORTEST`."""
-    first, last = cup.profile.arc_length_at([low, high]).tolist()
+    first, last = (float(length) for length in cup.profile.arc_length_at([low, high]))
     return max(last - first, SHORTEST)

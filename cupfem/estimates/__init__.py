@@ -28,7 +28,7 @@ from cupfem.estimates.lumped import (
 from cupfem.estimates.network import Steady, steady
 from cupfem.estimates.radial import RadialWall, Transient, transient
 from cupfem.estimates.slab import ONE_TERM_FOURIER, Heated, Quenched, time_to
-from cupfem.estimates.station import Face, Station, WallLayer, level_of, station
+from cupfem.estimates.station import Face, Station, WallLayer, station
 from cupfem.estimates.touching import (
     SKIN_EFFUSIVITY,
     HalfSpace,
@@ -62,7 +62,6 @@ __all__ = [
     "effusivity",
     "effusivity_of",
     "follow",
-    "level_of",
     "lumped_cooling",
     "lumped_drink",
     "lumped_time",

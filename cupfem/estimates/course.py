@@ -18,7 +18,7 @@ from cupfem.cup import Cup
 from cupfem.estimates.drink import lumped_drink, volume_at
 from cupfem.estimates.radial import ELEMENTS, TOLERANCE, RadialWall, Transient
 from cupfem.estimates.rosenbrock import Path, integrate, joined
-from cupfem.estimates.station import Face, Station, level_of, station
+from cupfem.estimates.station import Face, Station, station
 from cupfem.serving import Serving
 
 Floats = NDArray[np.float64]
@@ -41,7 +41,7 @@ def follow(
     paths: list[Path] = []
     state: Floats | None = None
     for begin, end in _spans(cup, serving, height):
-        level = level_of(cup, volume_at(cup, serving, 0.5 * (begin + end), begin))
+        level = cup.level(lumped_drink(cup, serving, begin).volume(0.5 * (begin + end)))
         wall = RadialWall(station(cup, serving, height, level, begin), course, elements)
         paths.append(integrate(wall, wall.start() if state is None else state, begin, end, tolerance))
         state = paths[-1].last
@@ -76,8 +76,8 @@ class DrinkCourse:
 
 def wetted_station(cup: Cup, serving: Serving, time: float = 0.0, begin: float = 0.0) -> Station:
     """The station at half the wetted height of the pour, with the film of a time and the room of `begin`."""
-    poured = level_of(cup, volume_at(cup, serving, 0.0))
-    level = level_of(cup, volume_at(cup, serving, time, begin))
+    poured = cup.level(volume_at(cup, serving, 0.0))
+    level = cup.level(lumped_drink(cup, serving, begin).volume(time))
     found = station(cup, serving, 0.5 * (cup.floor + poured), poured, begin)
     return replace(found, inner=Face(edges.wetted_films(cup, serving, level)))
 
@@ -86,7 +86,8 @@ def _spans(cup: Cup, serving: Serving, height: float) -> Iterator[tuple[float, f
     """Spans between two jumps, cut where the level passes the height."""
     passed = cup.volume(max(height, cup.floor))
     for begin, end in pairwise((0.0, *serving.breaks(), serving.duration)):
-        first, last = (volume_at(cup, serving, time, begin) for time in (begin, end))
+        volume = lumped_drink(cup, serving, begin).volume
+        first, last = volume(begin), volume(end)
         if first > passed > last:
             cut = begin + (end - begin) * (first - passed) / (first - last)
             yield begin, cut

@@ -13,9 +13,10 @@ import math
 from collections.abc import Callable
 from dataclasses import dataclass
 
+import numpy as np
+
 from cupfem import edges
 from cupfem.cup import Cup
-from cupfem.estimates.station import level_of
 from cupfem.fluids import Liquid, vapour_pressure, water_latent_heat
 from cupfem.serving import PRESSURE, Serving, fill_volume
 
@@ -52,55 +53,73 @@ def lumped_drink(cup: Cup, serving: Serving, begin: float = 0.0) -> LumpedDrink:
 
     The base counts as wetted wall.
     """
-
-    def volume(time: float) -> float:
-        return volume_at(cup, serving, time, begin)
+    volume, loss = _volume_from(cup, serving, begin), surface_loss(serving, begin)
 
     def area(time: float) -> float:
-        return wetted_area(cup, level_of(cup, volume(time)))
+        return wetted_area(cup, cup.level(volume(time)))
 
-    def loss(time: float, temperature: float) -> float:
-        return surface_loss(cup, serving, level_of(cup, volume(time)), temperature, begin)
+    def lost(time: float, temperature: float) -> float:
+        return loss(cup.inner_radius(cup.level(volume(time))), temperature)
 
-    return LumpedDrink(serving.drink.liquid, volume, area, loss)
+    return LumpedDrink(serving.drink.liquid, volume, area, lost)
 
 
-def volume_at(cup: Cup, serving: Serving, time: float, begin: float | None = None) -> float:
-    """Volume of drink [m3] at a time [s].
+def volume_at(cup: Cup, serving: Serving, time: float) -> float:
+    """Volume of drink [m3] at a time [s], after a sip at that time."""
+    return _volume_from(cup, serving, time)(time)
 
-    Of the sips those up to `begin` [s] count; left out: up to the time.
-    """
-    until = time if begin is None else begin
-    sips = sum(volume for taken, volume in serving.sips() if taken <= until)
-    steady = sum(flow * min(max(time - a, 0.0), b - a) for flow, a, b in serving.steady_drinking())
-    return max(fill_volume(cup, serving) - sips - steady, SMALLEST_VOLUME)
+
+def _volume_from(cup: Cup, serving: Serving, begin: float) -> Callable[[float], float]:
+    """Volume of drink [m3] as a function of the time [s]; of the sips those up to `begin` count."""
+    start = fill_volume(cup, serving) - sum(volume for taken, volume in serving.sips() if taken <= begin)
+    flows = serving.steady_drinking()
+
+    def volume(time: float) -> float:
+        drunk = sum(flow * min(max(time - a, 0.0), b - a) for flow, a, b in flows)
+        return max(start - drunk, SMALLEST_VOLUME)
+
+    return volume
 
 
 def wetted_area(cup: Cup, level: float) -> float:
-    """Inside of wall and base below a level [m]: side of a cone, and a disk unless open [m2]."""
-    low, high = cup.inner_radius(cup.floor), cup.inner_radius(level)
-    side = math.pi * (low + high) * math.hypot(level - cup.floor, high - low)
-    return side + (math.pi * low * low if cup.base_disc else 0.0)
+    """Inside of wall and base below a level [m]: frusta of cones, and a disk unless the cup is open [m2]."""
+    profile, floor = cup.profile, cup.floor
+    between = profile.height[(profile.height > floor) & (profile.height < level)]
+    height = np.concatenate([[floor], between, [max(level, floor)]])
+    radius = profile.radius_at(height)
+    side = float((radius[1:] + radius[:-1]) @ np.hypot(np.diff(height), np.diff(radius)))
+    return math.pi * (side + (float(radius[0]) ** 2 if cup.base_disc else 0.0))
 
 
-def surface_loss(cup: Cup, serving: Serving, level: float, temperature: float, time: float = 0.0) -> float:
-    """Heat that leaves the drink's surface at a level [m] [W]: vapour, convection, radiation."""
-    radius = cup.inner_radius(level)
+def surface_loss(serving: Serving, time: float = 0.0) -> Callable[[float, float], float]:
+    """Heat that leaves the drink's surface [W]: vapour, convection, radiation.
+
+    A function of the surface's radius [m] and the drink's temperature [degC], in the room of a time [s].
+    """
     room = float(serving.room.temperature_at(time))
     given = edges.surroundings_of(serving, "surface")
     around = room if given is None else given
-    films = edges.surface_films(serving).values()
-    flux = sum(float(film.heat_flux(temperature, around, level, time)) for film in films)
-    flux += _vapour_and_convection(serving, radius, temperature, room)
-    return math.pi * radius * radius * flux
+    films = tuple(edges.surface_films(serving).values())
+    with_closure = _vapour_and_convection(serving, room)
+
+    def loss(radius: float, temperature: float) -> float:
+        flux = sum(float(film.heat_flux(temperature, around, 0.0, time)) for film in films)
+        return math.pi * radius * radius * (flux + with_closure(radius, temperature))
+
+    return loss
 
 
-def _vapour_and_convection(serving: Serving, radius: float, temperature: float, room: float) -> float:
-    """Heat flux by the closure [W/m2]; none where a fixed film replaces it."""
+def _vapour_and_convection(serving: Serving, room: float) -> Callable[[float, float], float]:
+    """Heat flux by the closure [W/m2] of radius and temperature; none where a fixed film replaces it."""
     closure = edges.surface_closure(serving)
     if closure is None:
-        return 0.0
+        return lambda radius, temperature: 0.0
     vapour = float(vapour_pressure(room, serving.room.humidity))
-    air = (temperature, room, vapour, PRESSURE, 2.0 * radius, serving.drink.liquid.vapour_factor)
-    latent = float(closure.mass_flux(*air)) * float(water_latent_heat(temperature))
-    return latent + float(closure.heat_transfer_coefficient(*air)) * (temperature - room)
+    activity = serving.drink.liquid.vapour_factor
+
+    def flux(radius: float, temperature: float) -> float:
+        air = (temperature, room, vapour, PRESSURE, 2.0 * radius, activity)
+        latent = float(closure.mass_flux(*air)) * float(water_latent_heat(temperature))
+        return latent + float(closure.heat_transfer_coefficient(*air)) * (temperature - room)
+
+    return flux

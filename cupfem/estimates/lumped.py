@@ -18,10 +18,10 @@ from scipy.integrate import solve_ivp
 from cupfem.cup import Cup
 from cupfem.errors import InputError
 from cupfem.estimates.course import wetted_station
-from cupfem.estimates.drink import lumped_drink, surface_loss, volume_at, wetted_area
+from cupfem.estimates.drink import lumped_drink, volume_at, wetted_area
 from cupfem.estimates.effective import effective
 from cupfem.estimates.network import steady
-from cupfem.estimates.station import Station, level_of
+from cupfem.estimates.station import Station
 from cupfem.serving import Serving
 
 Floats = NDArray[np.float64]
@@ -116,9 +116,8 @@ def time_scales(cup: Cup, serving: Serving) -> TimeScales:
     place = wetted_station(cup, serving)
     network = steady(place)
     area, capacity = _size(cup, serving)
-    level = level_of(cup, volume_at(cup, serving, 0.0))
     hot = serving.drink.temperature
-    lost = area * network.heat_flux + surface_loss(cup, serving, level, hot)
+    lost = area * network.heat_flux + lumped_drink(cup, serving).loss(0.0, hot)
     wall = effective(place, network.temperature.tolist()).time_scale
     return TimeScales(wall, capacity * (hot - place.outside) / lost, lost * wall / capacity)
 
@@ -157,4 +156,4 @@ def _size(cup: Cup, serving: Serving) -> tuple[float, float]:
     """Wetted area [m2] and heat capacity [J/K] of the drink at the pour."""
     volume = volume_at(cup, serving, 0.0)
     capacity = lumped_drink(cup, serving).heat_capacity(0.0, serving.drink.temperature)
-    return wetted_area(cup, level_of(cup, volume)), capacity
+    return wetted_area(cup, cup.level(volume)), capacity

@@ -27,7 +27,7 @@ ELEMENTS = 10
 """Per solid layer."""
 GRADING = 0.9
 """Length of an element over that of its outer neighbour, in the innermost layer, which meets the drink."""
-TOLERANCE = 1e-4
+TOLERANCE = 5e-4
 """Local error of a step [K]."""
 STEP = 1e-3  # K and s, of the difference quotients
 BAND = 2

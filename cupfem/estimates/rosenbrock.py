@@ -131,14 +131,14 @@ def integrate(system: System, state: Floats, start: float, end: float, tolerance
     time, length = start, FIRST_SHARE * (end - start)
     steps: list[Step] = []
     while time < end:
-        length = min(length, end - time)
-        if end - time < 1.5 * length:
-            length = end - time
+        left = end - time
+        if left < 2.0 * length:
+            length = left if left <= length else 0.5 * left  # so that no sliver remains
         coefficients, reached, error = step(system, time, state, length)
         size = float(np.max(np.abs(error))) / tolerance
         if size <= 1.0:
             steps.append(Step(time, length, coefficients))
-            time, state = (end if length == end - time else time + length), reached
+            time, state = (end if length == left else time + length), reached
         factor = SAFETY * max(size, 1e-8) ** -0.25 if np.isfinite(size) else SHRINK
         length *= min(GROW, max(SHRINK, factor))
         if length < SHORTEST_SHARE * (end - start):

@@ -1,8 +1,8 @@
 """A station: the wall at one height as a stack of layers between two films, taken from cup and serving.
 
-The wall is a cone, and heat crosses it along its normal. The radii of the stack are therefore distances to
-the axis along the normal, r / cos(taper) on the inside face plus the thicknesses: with them the formulas of a
-cylinder hold for a cone whose temperature does not change along it.
+The wall is locally a cone, and heat crosses it along its normal. The radii of the stack are therefore
+distances to the axis along the normal, r / cos(lean) on the inside face plus the thicknesses: with them the
+formulas of a cylinder hold for a cone whose temperature does not change along it.
 """
 
 from __future__ import annotations
@@ -11,16 +11,18 @@ import math
 from collections.abc import Mapping
 from dataclasses import dataclass, field
 
+import numpy as np
+
 from cupfem import edges
-from cupfem.cup import Cup
+from cupfem.cup import Cup, Layer
 from cupfem.errors import InputError
 from cupfem.films import Film, Values
 from cupfem.fluids import air_conductivity, air_density, air_specific_heat
-from cupfem.gaps import Gap
+from cupfem.gaps import Gap, exchange_factor, radiation_conductance
 from cupfem.quantities import format_quantity
 from cupfem.serving import Serving, fill_volume
 
-GAS_TEMPERATURE = 50.0  # degC, at which the heat capacity of the air in a gap is taken
+GAS_TEMPERATURE = 50.0  # degC, of the air in a gap for its heat capacity, and of that in a loose fit
 
 
 @dataclass(frozen=True)
@@ -116,55 +118,71 @@ def station(
 ) -> Station:
     """The station at a height [m], with the films of a level [m] and the room of a time [s].
 
-    Level left out: that of the pour. A layer is there between its ends and not beyond: blends are left out.
-    Below the floor the inside is insulated. Raises InputError for a height that is not on the wall.
+    Level left out: that of the pour. A layer is there between its ends and not beyond, a ridge over its foot
+    with its full height: blends and flanks are left out. Below the floor the inside is insulated. Raises
+    InputError for a height that is not on the wall.
     """
     if not 0.0 <= height <= cup.height:
         why = f"not on the wall, from 0 mm to {_mm(cup.height)}"
         raise InputError("station", _mm(height), why, f'write for example "{_mm(0.5 * cup.height)}"')
     layers = _stack(cup, height)
-    radii = [cup.inner_radius(height) / math.cos(cup.half_taper_angle)]
+    radii = [cup.inner_radius(height) / math.cos(float(cup.profile.angle_at(height)))]
     for layer in layers:
         radii.append(radii[-1] + layer.thickness)
-    level = level_of(cup, fill_volume(cup, serving)) if level is None else level
+    level = cup.level(fill_volume(cup, serving)) if level is None else level
     room = float(serving.room.temperature_at(time))
     inner, outer = _inner_face(cup, serving, height, level, room), _outer_face(cup, serving, height, room)
     temperatures = serving.start_temperature, serving.drink.temperature
     return Station(height, tuple(radii), tuple(layers), inner, outer, *temperatures)
 
 
-def level_of(cup: Cup, volume: float) -> float:
-    """Level [m] of a volume of drink [m3]: the frustum of a cone, solved for its height."""
-    floor = cup.inner_radius(cup.floor)
-    slope = math.tan(cup.half_taper_angle)
-    ratio = 3.0 * slope * max(volume, 0.0) / (math.pi * floor**3)
-    if abs(ratio) < 1e-9:  # a cylinder, to rounding
-        return cup.floor + max(volume, 0.0) / (math.pi * floor * floor)
-    return cup.floor + floor * (math.cbrt(1.0 + ratio) - 1.0) / slope
-
-
 def _stack(cup: Cup, height: float) -> list[WallLayer]:
-    """Layers at a height; where one with a contact has stopped between two others, its contact."""
-    present = [cup.layer.index(layer) for layer in edges.stack_at(cup, height)]
+    """Layers at a height, with the contacts of loose layers and of layers that have stopped."""
+    present = [cup.layer.index(layer) for layer in cup.stack(height)]
     found = []
     for index, layer in enumerate(cup.layer):
         if index in present:
+            if layer.fit is not None:
+                found.append(_contact(f"{layer.name} fit", _fit_conductance(cup, layer, height)))
             found.append(_layer(cup, index, height))
         elif layer.contact is not None and min(present) < index < max(present):
-            found.append(WallLayer(f"{layer.name} contact", 0.0, math.inf, 0.0, contact=layer.contact))
+            found.append(_contact(f"{layer.name} contact", layer.contact))
     return found
+
+
+def _contact(name: str, conductance: float) -> WallLayer:
+    return WallLayer(name, 0.0, math.inf, 0.0, contact=conductance)
+
+
+def _fit_conductance(cup: Cup, layer: Layer, height: float) -> float:
+    """Conductance of a loose layer to what is inside it [W/(m2 K)].
+
+    Where air lies between, k / (g + g0) + h_radiation with g0 so that touching faces (g = 0) have the
+    conductance of the fit; common practice for rough faces, no source.
+    """
+    touching = layer.fit or math.inf
+    if layer.fit_gap is None:
+        return touching
+    low, high = cup.layer_range(layer)
+    gap = float(np.interp(height, (low, high), layer.fit_gap))
+    stack = cup.stack(height)
+    inside = cup.emissivity(stack[stack.index(layer) - 1], "outer")
+    factor = exchange_factor(inside, cup.emissivity(layer, "inner"))
+    radiation = float(radiation_conductance(GAS_TEMPERATURE, GAS_TEMPERATURE, factor))
+    air = float(air_conductivity(GAS_TEMPERATURE))
+    return air / (gap + air / (touching - radiation)) + radiation
 
 
 def _layer(cup: Cup, index: int, height: float) -> WallLayer:
     layer = cup.layer[index]
-    material = cup.material(layer.material)
+    material, thickness = cup.material(layer.material), layer.thickness_at(height)
     if material.kind == "solid":
         capacity = material.density.value * material.specific_heat.value
-        return WallLayer(layer.name, layer.thickness, material.conductivity_through.value, capacity)
+        return WallLayer(layer.name, thickness, material.conductivity_through.value, capacity)
     gap = edges.gap_of(cup, index, height)
     capacity = float(air_density(GAS_TEMPERATURE, gap.pressure)) * float(air_specific_heat(GAS_TEMPERATURE))
     conductivity = float(air_conductivity(GAS_TEMPERATURE))
-    return WallLayer(layer.name, layer.thickness, conductivity, capacity, gap, edges.gap_height(cup, index))
+    return WallLayer(layer.name, thickness, conductivity, capacity, gap, edges.gap_height(cup, index))
 
 
 def _inner_face(cup: Cup, serving: Serving, height: float, level: float, room: float) -> Face:
@@ -172,13 +190,13 @@ def _inner_face(cup: Cup, serving: Serving, height: float, level: float, room: f
         return Face()
     if height <= level:
         return Face(edges.wetted_films(cup, serving, level))
-    emissivity = edges.emissivity_of(cup, edges.stack_at(cup, height)[0])
+    emissivity = cup.emissivity(cup.stack(height)[0], "inner")
     films = edges.dry_films(cup, serving, level, emissivity)
     return Face(films, _led_to(serving, "dry", room))
 
 
 def _outer_face(cup: Cup, serving: Serving, height: float, room: float) -> Face:
-    emissivity = edges.emissivity_of(cup, edges.stack_at(cup, height)[-1])
+    emissivity = cup.emissivity(cup.stack(height)[-1], "outer")
     films = edges.outside_films(cup, serving, emissivity)
     return Face(films, _led_to(serving, "outside", room))
 
