@@ -3,11 +3,15 @@
 import json
 from pathlib import Path
 
-from cupfem.cup import cup_schema
+from cupfem.cup import cup_schema, sleeve_schema
 from cupfem.serving import serving_schema
 
 HERE = Path(__file__).parent
-SCHEMAS = {"cup.schema.json": cup_schema, "serving.schema.json": serving_schema}
+SCHEMAS = {
+    "cup.schema.json": cup_schema,
+    "sleeve.schema.json": sleeve_schema,
+    "serving.schema.json": serving_schema,
+}
 
 
 def text_of(name: str) -> str:
