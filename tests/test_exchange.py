@@ -20,6 +20,7 @@ from cupfem.exchange.fields import section_grid
 from cupfem.exchange.heat_flux import HeatFlux
 from cupfem.exchange.vtu import Arrays, Grid, vtu_text
 from cupfem.gaps import Gap
+from cupfem.problem import properties
 
 ROOT = Path(__file__).parents[1]
 CUP = ROOT / "geometries" / "double_wall.toml"
@@ -35,6 +36,22 @@ def run():
 @pytest.fixture(scope="module")
 def written(run, tmp_path_factory):
     return write_fields(run, tmp_path_factory.mktemp("fields") / "fields.pvd")
+
+
+@pytest.fixture(scope="module")
+def held():
+    """A run with two pads, the second of them between two stored moments."""
+    pads = [
+        {"height": "50 mm", "width": "6 mm", "pick_up": "10 s"},
+        {"height": "70 mm", "width": "6 mm", "pick_up": "12 s", "release": "15 s"},
+    ]
+    serving = cupfem.Serving(duration="60 s", pad=pads)
+    return cupfem.pour(cupfem.load_cup(CUP), serving, fineness=0.25, companion=False)
+
+
+def heat_flux(run, field):
+    """Heat flux of a field of the free wall `[2, element]`."""
+    return HeatFlux(run.mesh, properties(run.cup, run.mesh)).at(field)
 
 
 def listed(path):
@@ -197,7 +214,7 @@ def test_area_of_a_layer(written):
 def test_heat_flux_in_a_solid(run):
     """-k grad T of a linear field, split along and across a wall that leans by atan(11.5 / 95)."""
     gradient = np.array([3000.0, 500.0])
-    flux = HeatFlux(run).at(gradient @ run.mesh.points)
+    flux = heat_flux(run, gradient @ run.mesh.points)
     board = run.cup.material("cupstock board")
     lean = math.atan2(11.5, 95.0)
     along, across = np.array([math.sin(lean), math.cos(lean)]), np.array([math.cos(lean), -math.sin(lean)])
@@ -214,7 +231,7 @@ def outward_flow(run, region):
     elements = elements[abs(mesh.wall_coordinates[0, mesh.element_dofs[8, elements]] - 50e-3) < 25e-3]
     low, high, centre = (mesh.points[:, mesh.element_dofs[node, elements]] for node in (4, 6, 8))
     along = mesh.along[:, elements]
-    across = (HeatFlux(run).at(run.snapshots[-1])[:, elements] * [along[1], -along[0]]).sum(axis=0)
+    across = (heat_flux(run, run.snapshots[-1])[:, elements] * [along[1], -along[0]]).sum(axis=0)
     rows = len(np.unique(np.round(mesh.wall_coordinates[1, mesh.element_dofs[8, elements]], 7)))
     return (across * 2.0 * math.pi * centre[0] * np.hypot(*(high - low))).sum() / rows
 
@@ -238,7 +255,7 @@ def test_heat_flux_under_the_surface_carries_what_leaves_it(run):
     outermost = elements[across >= np.where(same_place, across, 0.0).max(axis=1) - 1e-9]
     low, high, centre = (mesh.points[:, mesh.element_dofs[node, outermost]] for node in (4, 6, 8))
     along = mesh.along[:, outermost]
-    flux = (HeatFlux(run).at(run.snapshots[-1])[:, outermost] * [along[1], -along[0]]).sum(axis=0)
+    flux = (heat_flux(run, run.snapshots[-1])[:, outermost] * [along[1], -along[0]]).sum(axis=0)
     leaving = run.series.powers["outside convection"][-1] + run.series.powers["outside radiation"][-1]
     assert (flux * 2.0 * math.pi * centre[0] * np.hypot(*(high - low))).sum() == pytest.approx(
         leaving, rel=0.01
@@ -248,8 +265,51 @@ def test_heat_flux_under_the_surface_carries_what_leaves_it(run):
 def test_heat_flux_in_the_file(run, written):
     for number in (0, -1):
         found = arrays(read(listed(written)[number][1]).GetCellData())["heat_flux_W_m2"]
-        np.testing.assert_allclose(found[:, :2].T, HeatFlux(run).at(run.snapshots[number]), rtol=1e-6)
+        np.testing.assert_allclose(found[:, :2].T, heat_flux(run, run.snapshots[number]), rtol=1e-6)
         assert not found[:, 2].any()
+
+
+# -- fingers -------------------------------------------------------------------------------------------------
+
+
+def test_a_pad_has_fields_of_its_own(held, tmp_path):
+    path = write_fields(held, tmp_path / "fields.pvd")
+    assert sorted(file.name for file in tmp_path.iterdir()) == ["fields", "fields.pvd", "fields_pad1.pvd"]
+    found = listed(tmp_path / "fields_pad1.pvd")
+    assert [time for time, _ in found] == [10.0, 20.0, 30.0, 60.0]
+    for (_, file), field in zip(found, held.pads[0].snapshots, strict=True):
+        grid = read(file)
+        temperature = arrays(grid.GetPointData())["temperature_degC"]
+        np.testing.assert_allclose(temperature, field, rtol=0.0, atol=1e-6)
+        assert misplaced_middles(grid) < 1e-12
+    assert {"inner", "outer", "epidermis", "dermis"} < set(texts(grid, "region_names"))
+    assert {"cupstock board", "air", "epidermis"} < set(texts(grid, "material_names"))
+    assert [time for time, _ in listed(path)] == list(held.snapshot_times)
+
+
+def test_heat_flux_into_the_skin(held, tmp_path):
+    """In the middle of the pad, what the outer layer's last cells carry is what the first of the skin take:
+    within 3 %, since their centres lie apart and the skin is still warming."""
+    write_fields(held, tmp_path / "fields.pvd")
+    cells = arrays(read(listed(tmp_path / "fields_pad1.pvd")[-1][1]).GetCellData())
+    mesh = held.pads[0].mesh
+    place, across = mesh.wall_coordinates[:, mesh.element_dofs[8]]
+    along = mesh.along
+    flux = (cells["heat_flux_W_m2"][:, :2].T * [along[1], -along[0]]).sum(axis=0)
+    skin = np.flatnonzero(cells["epidermis"])
+    middle = skin[np.argmin(abs(place[skin] - 50.4e-3))]
+    column = np.flatnonzero(abs(place - place[middle]) < 1e-7)
+    first = min((c for c in column if cells["epidermis"][c]), key=lambda c: across[c])
+    last = max((c for c in column if cells["outer"][c]), key=lambda c: across[c])
+    assert flux[first] > 100.0
+    assert flux[last] == pytest.approx(flux[first], rel=0.03)
+
+
+def test_fewer_pads_leave_no_old_files(held, run, tmp_path):
+    write_fields(held, tmp_path / "fields.pvd")
+    write_fields(run, tmp_path / "fields.pvd")
+    assert {file.name for file in tmp_path.iterdir()} == {"fields", "fields.pvd"}
+    assert not list((tmp_path / "fields").glob("*pad*"))
 
 
 # -- the writer alone ----------------------------------------------------------------------------------------

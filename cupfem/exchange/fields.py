@@ -4,18 +4,23 @@ from __future__ import annotations
 
 import re
 from collections.abc import Iterator, Mapping
+from dataclasses import dataclass
 from pathlib import Path
 
 import numpy as np
 from numpy.typing import NDArray
 
-from cupfem.cup import Cup
+from cupfem.conduction import GasLayer, Solid
 from cupfem.errors import InputError
 from cupfem.exchange.files import explained
 from cupfem.exchange.heat_flux import HeatFlux
 from cupfem.exchange.vtu import Arrays, Grid, pvd_text, vtu_text
+from cupfem.meridian import Meridian
 from cupfem.mesh import SectionMesh
+from cupfem.problem import properties
 from cupfem.run import Run
+from cupfem.skin import get_skin
+from cupfem.touch.section import pad_properties
 
 Floats = NDArray[np.float64]
 
@@ -33,18 +38,20 @@ _TURNED = {
 
 
 def write_fields(run: Run, path: str | Path = "fields.pvd") -> Path:
-    """Write the stored fields of a run as `.pvd` with binary `.vtu` files in a folder of the same name
-    beside it.
+    """Write the stored fields of a run as `.pvd`, with binary `.vtu` files in a folder of the same name.
 
     Point arrays: `temperature_degC`, `wall_s_m`, `wall_n_m` (along and across the wall; NaN in the base).
     Cell arrays: one of 0 and 1 for each layer, by its name; `region_id` and `material_id`, which count in the
     file's `region_names` and `material_names`; `heat_flux_W_m2` at the centre. x is the radius r and y the
     height z, both in metres; the time is in seconds.
 
+    What stands under a finger, wall and skin, goes to a `.pvd` of its own: `fields_pad1.pvd` for the first
+    pad, if a moment was stored while it was held.
+
     Returns
     -------
     Path
-        The `.pvd` file. It is written last, so that it names only files that are whole.
+        The `.pvd` file of the free wall. A `.pvd` file is written after those that it names.
 
     Raises
     ------
@@ -57,33 +64,78 @@ def write_fields(run: Run, path: str | Path = "fields.pvd") -> Path:
     with explained(path):
         folder = path.with_suffix("")
         folder.mkdir(exist_ok=True)
-        path.unlink(missing_ok=True)
-        _clear(folder, path.stem)
-        files = []
-        for index, (time, text) in enumerate(_moments(run)):
-            file = folder / f"{path.stem}_{index:04d}.vtu"
-            file.write_text(text, encoding="utf-8")
-            files.append((time, f"{folder.name}/{file.name}"))
-        path.write_text(pvd_text(files), encoding="utf-8")
+        _clear(path, folder)
+        for suffix, section in sections(run).items():
+            if len(section.times) or not suffix:
+                _write_section(section, path.with_name(f"{path.stem}{suffix}.pvd"), folder)
     return path
 
 
-def _clear(folder: Path, stem: str) -> None:
-    """Remove the files of an earlier writing, which may have had more moments; nothing else."""
-    for file in folder.iterdir():
-        if re.fullmatch(rf"{re.escape(stem)}_\d{{4,}}\.vtu", file.name):
-            file.unlink()
+@dataclass(frozen=True, eq=False)
+class Fields:
+    """Fields `[k, dof]` on a mesh at times `[k]`, and what the mesh is made of."""
+
+    mesh: SectionMesh
+    times: Floats
+    temperatures: Floats
+    properties: Mapping[str, Solid | GasLayer]
+    materials: Mapping[str, str]
 
 
-def _moments(run: Run) -> Iterator[tuple[float, str]]:
+def sections(run: Run) -> dict[str, Fields]:
+    """What a run holds fields of, by the end of the file's name: the free wall, and each pad."""
+    materials = wall_materials(run.meridian, run.mesh)
+    given = properties(run.cup, run.mesh)
+    found = {"": Fields(run.mesh, run.snapshot_times, run.snapshots, given, materials)}
+    for number, field in enumerate(run.pads, 1):
+        skin = get_skin(field.pad.skin)
+        given = pad_properties(run.cup, field.pad, skin, field.mesh)
+        tissues = {tissue.name: tissue.name for tissue in skin.layers}
+        found[f"_pad{number}"] = Fields(
+            field.mesh, field.snapshot_times, field.snapshots, given, {**materials, **tissues}
+        )
+    return found
+
+
+def wall_materials(meridian: Meridian, mesh: SectionMesh) -> dict[str, str]:
+    """Region -> name of its material."""
+    given = {layer.name: layer.material.name for layer in meridian.layers}
+    given |= dict.fromkeys(mesh.pockets, POCKET_MATERIAL)
+    return given | ({} if meridian.base is None else {"base": meridian.base.material.name})
+
+
+def _clear(path: Path, folder: Path) -> None:
+    """Remove the files of an earlier writing, which may have had more pads or moments; nothing else."""
+    stem = re.escape(path.stem)
+    for place, name in (
+        (path.parent, rf"{stem}(_pad\d+)?\.pvd"),
+        (folder, rf"{stem}(_pad\d+)?_\d{{4,}}\.vtu"),
+    ):
+        for file in place.iterdir():
+            if re.fullmatch(name, file.name):
+                file.unlink()
+
+
+def _write_section(section: Fields, path: Path, folder: Path) -> None:
+    files = []
+    for index, (time, text) in enumerate(_moments(section)):
+        file = folder / f"{path.stem}_{index:04d}.vtu"
+        file.write_text(text, encoding="utf-8")
+        files.append((time, f"{folder.name}/{file.name}"))
+    path.write_text(pvd_text(files), encoding="utf-8")
+
+
+def _moments(section: Fields) -> Iterator[tuple[float, str]]:
     """Time [s] and file content of each stored field."""
-    grid, flux = section_grid(run.mesh), HeatFlux(run)
-    of_region, material_names = materials(run.cup, run.mesh)
-    names = {"region_names": list(run.mesh.regions), "material_names": material_names}
-    places, marks = _wall_places(run.mesh), _marks(run.mesh, of_region)
-    for time, temperature in zip(run.snapshot_times, run.snapshots, strict=True):
+    mesh = section.mesh
+    grid, flux = section_grid(mesh), HeatFlux(mesh, section.properties)
+    materials = list(dict.fromkeys(section.materials[region] for region in mesh.regions))
+    names = {"region_names": list(mesh.regions), "material_names": materials}
+    along, across = mesh.wall_coordinates
+    marks = _marks(mesh, {region: materials.index(section.materials[region]) for region in mesh.regions})
+    for time, temperature in zip(section.times, section.temperatures, strict=True):
         arrays = Arrays(
-            points={"temperature_degC": temperature, **places},
+            points={"temperature_degC": temperature, "wall_s_m": along, "wall_n_m": across},
             cells={**marks, "heat_flux_W_m2": _with_third(flux.at(temperature))},
             whole={"TimeValue": np.array([time]), **names},
         )
@@ -102,21 +154,6 @@ def signed_areas(mesh: SectionMesh) -> Floats:
     """Area of each cell's corner polygon `[element]` [m2], positive if it runs counter-clockwise."""
     r, z = mesh.points[:, mesh.element_dofs[: mesh.grid.t.shape[0]]]
     return np.asarray(0.5 * (r * np.roll(z, -1, axis=0) - np.roll(r, -1, axis=0) * z).sum(axis=0))
-
-
-def materials(cup: Cup, mesh: SectionMesh) -> tuple[dict[str, int], list[str]]:
-    """Region -> place of its material in the list of names."""
-    given = {layer.name: layer.material for layer in cup.layer}
-    given |= dict.fromkeys(mesh.pockets, POCKET_MATERIAL)
-    if cup.base_disc is not None:
-        given["base"] = cup.base_disc.material
-    names = list(dict.fromkeys(given[region] for region in mesh.regions))
-    return {region: names.index(given[region]) for region in mesh.regions}, names
-
-
-def _wall_places(mesh: SectionMesh) -> dict[str, Floats]:
-    along, across = mesh.wall_coordinates
-    return {"wall_s_m": along, "wall_n_m": across}
 
 
 def _marks(mesh: SectionMesh, of_region: Mapping[str, int]) -> dict[str, NDArray[np.generic]]:

@@ -2,26 +2,25 @@
 
 from __future__ import annotations
 
+from collections.abc import Mapping
+
 import numpy as np
 from numpy.typing import NDArray
 from skfem import Basis
 
 from cupfem.conduction import GasLayer, Solid
 from cupfem.mesh import SectionMesh
-from cupfem.problem import properties
-from cupfem.run import Run
 
 Floats = NDArray[np.float64]
 Ints = NDArray[np.int_]
 
 
 class HeatFlux:
-    """Heat flux of a run's fields; what does not change from field to field is set up once."""
+    """Heat flux of fields on a mesh; what does not change from field to field is set up once."""
 
-    def __init__(self, run: Run):
-        self._mesh = run.mesh
-        self._properties = properties(run.cup, run.mesh)
-        self._shape, self._slope = centre_shapes(run.mesh)
+    def __init__(self, mesh: SectionMesh, properties: Mapping[str, Solid | GasLayer]):
+        self._mesh, self._properties = mesh, properties
+        self._shape, self._slope = centre_shapes(mesh)
 
     def at(self, temperature: Floats) -> Floats:
         """Heat flux -k grad T `[2, element]` [W/m2] in r and z, from a field `[dof]` [degC].
