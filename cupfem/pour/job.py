@@ -84,9 +84,10 @@ def _march(
     grip = Grip(problem, fineness, films)
     faces = faces_of(problem.mesh, problem.meridian)
     times = series_times(serving.duration, serving.breaks())
-    recorder = Recorder(problem.system, faces, times, snapshot_times(serving.duration))
-    march = March(problem.system, tolerance)
     state = problem.start
+    unknowns = len(problem.system.drink_state(state))
+    recorder = Recorder(problem.system, faces, times, snapshot_times(serving.duration), unknowns)
+    march = March(problem.system, tolerance)
     before = problem.system.stored(state)
     time = 0.0
     for end in [*serving.breaks(), serving.duration]:
@@ -120,6 +121,7 @@ def _march(
         time_error=recorder.time_error,
         defaults=(*defaults_used(problem.cup), *defaults_used(serving)),
         final_state=state,
+        drink_states=recorder.drink_states,
         films=films,
         pads=grip.results(),
     )

@@ -17,12 +17,13 @@ Floats = NDArray[np.float64]
 class Recorder:
     """Samples accepted steps at the times of the series and of the snapshots."""
 
-    def __init__(self, system: System, faces: Faces, times: Floats, snapshot_times: Floats):
+    def __init__(self, system: System, faces: Faces, times: Floats, snapshot_times: Floats, unknowns: int):
         self._faces, self._times, self.snapshot_times = faces, times, snapshot_times
         self._size = system.sections[0].conduction.mesh.size
         self._kept = np.full((len(times), 3), np.nan)
         self._outer = np.empty((len(times), len(faces.outer)))
         self._inner = np.empty((len(times), len(faces.inner)))
+        self.drink_states = np.empty((len(times), unknowns))
         self._powers: dict[str, Floats] = {}
         self.snapshots = np.empty((len(snapshot_times), self._size))
         self._energies: dict[str, float] = {}
@@ -73,6 +74,7 @@ class Recorder:
     def _keep(self, index: int, system: System, state: Floats) -> None:
         drink = system.lumped(state)
         self._kept[index] = drink.temperature, drink.level, drink.mass
+        self.drink_states[index] = system.drink_state(state)
         wall = state[: self._size]
         self._outer[index] = wall[self._faces.outer]
         self._inner[index] = wall[self._faces.inner]

@@ -112,6 +112,8 @@ class Run:
     snapshots: Floats
     ledger: Ledger
     final_state: Floats
+    drink_states: Floats
+    """`[t, unknown]` mass [kg] and enthalpy [J] of the drink, and what a headspace has, for a restart."""
     counters: Mapping[str, int]
     time_error: float
     space_errors: Mapping[str, float] = field(default_factory=dict)

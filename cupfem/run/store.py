@@ -76,6 +76,7 @@ def load_run(folder: str | Path) -> Run:
         snapshot_times=arrays["snapshot_times"],
         snapshots=arrays["snapshots"],
         final_state=arrays["final_state"],
+        drink_states=arrays["drink_states"],
         ledger=Ledger(**told["ledger"]),
         counters=told["counters"],
         space_errors=told["space_errors"],
@@ -93,6 +94,7 @@ def _arrays(run: Run) -> dict[str, Floats]:
         "snapshot_times": run.snapshot_times,
         "snapshots": run.snapshots,
         "final_state": run.final_state,
+        "drink_states": run.drink_states,
     }
     ledger = run.ledger
     told = {name: getattr(run, name) for name in TOLD}

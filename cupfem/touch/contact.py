@@ -7,17 +7,19 @@ pick-ups, c = p x h columns (pick-ups outermost), n nodes.
 
 from __future__ import annotations
 
-from collections.abc import Mapping
+from collections.abc import Callable
 from dataclasses import dataclass
 from itertools import pairwise
 
 import numpy as np
 from numpy.typing import NDArray
 
-from cupfem import edges
+from cupfem.conduction import Exchange
+from cupfem.drink import Lumped
 from cupfem.errors import InputError
-from cupfem.films import Film
 from cupfem.materials import SurfaceClass
+from cupfem.meridian import MINIMUM_THICKNESS
+from cupfem.problem import Problem, ambient_at, build
 from cupfem.run import Run
 from cupfem.skin import RESTING_FILM, THICK_DEPTH, THIN_DEPTH, Skin, damage, damage_rate
 from cupfem.touch.columns import GAMMA, Columns, join, step_times
@@ -25,6 +27,7 @@ from cupfem.touch.finger import FLAT, SkinColumn, contact_conductance, resting_p
 from cupfem.touch.wall import Wall, free_outer, free_profiles
 
 Floats = NDArray[np.float64]
+Ints = NDArray[np.int_]
 
 LEAST_DIFFERENCE = 0.05
 """Difference of temperature [K] below which a film's coefficient is taken at this difference."""
@@ -74,6 +77,7 @@ def touch(
     skin: Skin,
     conductance: float | None = None,
     gap_resistance: float = 1.0,
+    problem: Problem | None = None,
 ) -> Contact:
     """Touch the wall of a run.
 
@@ -87,6 +91,8 @@ def touch(
         Contact conductance [W/(m2 K)]; left out: by the class of the outer layer's surface.
     gap_resistance:
         Share of each gap's resistance that is left under the grip.
+    problem:
+        That of the run, if it is there already.
 
     Raises
     ------
@@ -97,7 +103,8 @@ def touch(
     layers = [run.meridian.outer_layer_at(float(height)) for height in heights]
     by_class = np.array([contact_conductance(layer.material) for layer in layers])
     chosen = by_class if conductance is None else np.full(len(heights), conductance)
-    march = _March(run, heights, pick_ups, skin, chosen, gap_resistance)
+    problem = problem or problem_of(run)
+    march = _March(run, problem, heights, pick_ups, skin, chosen, gap_resistance)
     time = step_times(longest)
     shape = (len(time), len(pick_ups), len(heights))
     kept = march.run(time)
@@ -121,6 +128,11 @@ def touch(
         skins=kept,
         room=march.room,
     )
+
+
+def problem_of(run: Run) -> Problem:
+    """The problem that a run solved, from its cup, serving and films."""
+    return build(run.cup, run.serving, run.fineness, run.films)
 
 
 def _check(run: Run, heights: Floats, pick_ups: Floats) -> None:
@@ -149,6 +161,7 @@ class _March:
     def __init__(
         self,
         run: Run,
+        problem: Problem,
         heights: Floats,
         pick_ups: Floats,
         skin: Skin,
@@ -168,7 +181,8 @@ class _March:
         self.room = np.repeat(run.serving.room.temperature_at(pick_ups), len(heights))
         nodes = start.reshape(-1, start.shape[2])
         self.field = np.concatenate([nodes, resting_profile(skin, self.room)], axis=1)
-        self.inside = InsideFilm(run, np.tile(heights, len(pick_ups)), np.repeat(pick_ups, len(heights)))
+        places = np.tile(heights, len(pick_ups)), np.repeat(pick_ups, len(heights))
+        self.inside = InsideFilm(problem, run, *places)
         self.first_of_skin = nodes.shape[1]
 
     def run(self, time: Floats) -> Floats:
@@ -197,68 +211,79 @@ class _March:
 
 
 class InsideFilm:
-    """Film between the inside face of columns and the drink below the level, the room above it.
+    """Film between the inside face of columns and what is inside the cup, as the problem has it there.
 
-    After the end of the serving everything stays as it was.
+    Drink and headspace are those of the run, `[c]` columns at their own moments; after the end of the serving
+    everything stays as it was.
     """
 
-    def __init__(self, run: Run, heights: Floats, pick_ups: Floats):
+    def __init__(self, problem: Problem, run: Run, heights: Floats, pick_ups: Floats):
         self._run, self._heights, self._pick_ups = run, heights, pick_ups
-        series = run.series
-        there = np.isfinite(series.drink_temperature)
-        self._times = series.time
-        self._drink = np.where(there, series.drink_temperature, 0.0)
-        self._level = np.where(there, series.drink_level, -np.inf)
-        self._groups = [np.flatnonzero(pick_ups == pick_up) for pick_up in np.unique(pick_ups)]
-        self._dry = edges.surroundings_of(run.serving, "dry")
+        self._drink = problem.system.drink
+        within = [_innermost(run, float(height)) for height in heights]
+        groups = sorted({(pick_up, name) for pick_up, name in zip(pick_ups, within, strict=True)})
+        inside = problem.system.sections[0].conduction.conditions.exchanges
+        names = np.array(within)
+        self._groups = [
+            (
+                np.flatnonzero((pick_ups == pick_up) & (names == name)),
+                [exchange for exchange in inside if exchange.edge == f"inside.{name}"],
+            )
+            for pick_up, name in groups
+        ]
 
     def surroundings(self, time: float) -> Floats:
         """Temperature `[c]` [degC] beyond the film at a time since touching [s]."""
-        moments = self._pick_ups + time
-        wet = self._heights < self._level_at(moments)
-        room = self._run.serving.room.temperature_at(moments)
-        dry = room if self._dry is None or "dry" in self._run.films else self._dry
-        return np.where(wet, np.interp(moments, self._times, self._drink), dry)
+        return self._each(time, lambda exchange, columns, drink, moment: _around(
+            exchange, self._heights[columns], drink, moment))  # fmt: skip
 
     def conductance(self, surface: Floats, time: float) -> Floats:
         """Film coefficient `[c]` [W/(m2 K)] at surface temperatures `[c]` [degC]."""
-        around = self.surroundings(time)
-        difference = surface - around
-        small = np.abs(difference) < LEAST_DIFFERENCE
-        difference = np.where(small, np.where(difference < 0, -1.0, 1.0) * LEAST_DIFFERENCE, difference)
-        out = np.empty_like(surface)
-        for columns in self._groups:
-            moment = float(self._pick_ups[columns[0]]) + time
-            level = float(self._level_at(np.array(moment)))
-            wet = self._heights[columns] < level
-            for chosen, films in ((columns[wet], self._films("wetted", level)),
-                                  (columns[~wet], self._films("dry", level))):  # fmt: skip
+
+        def coefficient(exchange: Exchange, columns: Ints, drink: Lumped, moment: float) -> Floats:
+            heights = self._heights[columns]
+            around = _around(exchange, heights, drink, moment)
+            difference = surface[columns] - around
+            small = np.abs(difference) < LEAST_DIFFERENCE
+            difference = np.where(small, np.copysign(LEAST_DIFFERENCE, difference), difference)
+            films = exchange.films(drink) if callable(exchange.films) else exchange.films
+            fluxes = [film.heat_flux(around + difference, around, heights, moment) for film in films.values()]
+            return np.maximum(np.asarray(sum(fluxes)) / difference, 0.0)
+
+        return self._each(time, coefficient)
+
+    def _each(self, time: float, values: Callable[[Exchange, Ints, Lumped, float], Floats]) -> Floats:
+        """Values `[c]`, asked for the columns that each exchange acts on."""
+        out = np.zeros(len(self._heights))
+        for columns, exchanges in self._groups:
+            moment = min(float(self._pick_ups[columns[0]]) + time, self._run.serving.duration)
+            drink = self._lumped(moment)
+            for exchange in exchanges:
+                low, high = exchange.window(drink, moment) if exchange.window else (-np.inf, np.inf)
+                here = self._heights[columns]
+                chosen = columns[(here >= low) & (here < high)]
                 if len(chosen):
-                    flux = _flux(films, around[chosen] + difference[chosen], around[chosen],
-                                 self._heights[chosen], moment)  # fmt: skip
-                    out[chosen] = flux / difference[chosen]
-        return np.maximum(out, 0.0)
+                    out[chosen] = values(exchange, chosen, drink, moment)
+        return out
 
-    def _level_at(self, moments: Floats) -> Floats:
-        place = np.clip(np.searchsorted(self._times, moments) - 1, 0, len(self._times) - 2)
-        low, high = self._level[place], self._level[place + 1]
-        span = self._times[place + 1] - self._times[place]
-        share = np.clip((moments - self._times[place]) / span, 0.0, 1.0)
-        both = np.isfinite(low) & np.isfinite(high)
-        rise = np.where(both, high, 0.0) - np.where(both, low, 0.0)
-        return np.where(both, np.where(both, low, 0.0) + share * rise, np.minimum(low, high))
-
-    def _films(self, edge: str, level: float) -> Mapping[str, Film]:
-        run = self._run
-        if edge in run.films:
-            return {edge: run.films[edge]}
-        if edge == "wetted":
-            return edges.wetted_films(run.cup, run.serving, max(level, run.meridian.floor))
-        return edges.dry_films(run.cup, run.serving, max(level, run.meridian.floor))
+    def _lumped(self, moment: float) -> Lumped:
+        assert self._drink is not None
+        times, states = self._run.series.time, self._run.drink_states
+        place = int(np.clip(np.searchsorted(times, moment, side="right") - 1, 0, len(times) - 2))
+        share = (moment - times[place]) / (times[place + 1] - times[place])
+        state = (1.0 - share) * states[place] + share * states[place + 1]
+        return self._drink.lumped(state, ambient_at(self._run.serving, moment))
 
 
-def _flux(films: Mapping[str, Film], surface: Floats, around: Floats, height: Floats, time: float) -> Floats:
-    return np.asarray(sum(film.heat_flux(surface, around, height, time) for film in films.values()))
+def _innermost(run: Run, height: float) -> str:
+    layers = run.meridian.layers
+    return next(layer.name for layer in layers if float(layer.thickness_at(height)) > MINIMUM_THICKNESS)
+
+
+def _around(exchange: Exchange, heights: Floats, drink: Lumped, moment: float) -> Floats:
+    given = exchange.surroundings
+    around = given(heights, moment, drink) if callable(given) else given
+    return np.broadcast_to(np.asarray(around, dtype=float), heights.shape)
 
 
 # -- after the release ---------------------------------------------------------------------------------------

@@ -295,7 +295,9 @@ def _conduction(
 ) -> Conduction:
     given = pad_properties(problem.cup, pad, skin, mesh)
     below = Exchange("core", {HAND: FixedFilm(skin.below)}, skin.core)
-    around = exchanges(problem.cup, problem.serving, mesh, films)
+    drink = problem.system.drink
+    headspace = None if drink is None else drink.headspace
+    around = exchanges(problem.cup, problem.serving, mesh, films, headspace)
     conduction = Conduction(mesh, given, Conditions((*around, below)))
     conduction.exchanges.append(Perfusion(conduction, skin))
     return conduction

@@ -106,7 +106,7 @@ class Wall:
 class _Builder:
     def __init__(self, run: Run, heights: Floats, gap_resistance: float):
         self.run, self.z, self.left = run, heights, gap_resistance
-        self.given = properties(run.cup, run.mesh)
+        self.given = properties(run.cup, run.mesh, run.serving.room.pressure)
         self.radius = np.asarray(run.meridian.profile.radius_at(heights))
         self.gaps: list[GapLinks] = []
         self.first = 0
