@@ -4,6 +4,8 @@ No figure is shown or kept by this module, no global setting of matplotlib is ch
 imported. Every function takes ``units="us"`` too.
 """
 
+from matplotlib.figure import Figure
+
 from cupfem.figures.field import field_figure, field_frames, field_times
 from cupfem.figures.files import png, svg, write_drawing, write_figures
 from cupfem.figures.heat import drink_figure, grouped_heats, heat_figure
@@ -11,6 +13,7 @@ from cupfem.figures.section import section_figure
 from cupfem.figures.wall import wall_history, wall_map, wall_profile
 
 __all__ = [
+    "Figure",
     "drink_figure",
     "field_figure",
     "field_frames",

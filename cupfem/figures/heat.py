@@ -9,7 +9,7 @@ from matplotlib.axes import Axes
 from matplotlib.figure import Figure
 from numpy.typing import NDArray
 
-from cupfem.edges import TO_DRINK
+from cupfem.edges import INTERNAL
 from cupfem.figures import style
 from cupfem.quantities import Units
 from cupfem.run import Run
@@ -26,6 +26,8 @@ GROUPS = {
     "dry wall convection": "dry wall inside",
     "dry wall radiation": "dry wall inside",
     "underside": "underside and table",
+    "lid convection": "lid: convection",
+    "lid radiation": "lid: radiation",
 }
 """Term of the ledger -> what a picture calls it; another term keeps its name."""
 COLOURS = {
@@ -36,10 +38,16 @@ COLOURS = {
     "outer wall: radiation": "#d98b2b",
     "dry wall inside": "#5f8f4e",
     "underside and table": "#7a6a58",
+    "lid: convection": "#8a3a6b",
+    "lid: radiation": "#c26aa0",
+    "air through the lid": "#3f7f7a",
+    "hand": "#c0392b",
 }
 OTHER = "#444b54"
-DRUNK = ("sips", TO_DRINK)
-"""Terms that are not a loss of heat: what is drunk, and the flow from wall to drink."""
+LIQUID = ("sips", "refills")
+"""Terms that go with drink that is taken out or poured in."""
+NOT_LOST = frozenset({*LIQUID, *INTERNAL})
+"""Terms that are no loss of heat to the room: liquid, and flows between parts of the cup."""
 FIRST = 1.0
 """Start of the time axis of the heat flows [s]; before it the jump of the pour goes off the scale."""
 
@@ -112,7 +120,7 @@ def grouped_flows(run: Run) -> dict[str, Floats]:
     """Heat flows `[t]` [W] that leave cup and drink, as a picture calls them."""
     flows: dict[str, Floats] = {}
     for name, power in run.series.powers.items():
-        if name not in DRUNK:
+        if name not in NOT_LOST:
             group = GROUPS.get(name, name)
             flows[group] = flows[group] + power if group in flows else power
     return flows
@@ -122,7 +130,7 @@ def grouped_heats(run: Run) -> dict[str, float]:
     """Heats [J] that left cup and drink over the run, and what the cup took up; largest first."""
     heats: dict[str, float] = {}
     for name, heat in run.ledger.out.items():
-        if name not in DRUNK:
+        if name not in NOT_LOST:
             heats[GROUPS.get(name, name)] = heats.get(GROUPS.get(name, name), 0.0) + heat
     heats["stored in the cup"] = float(sum(run.ledger.stored.values()))
     return dict(sorted(heats.items(), key=lambda item: -item[1]))
@@ -166,6 +174,12 @@ def _percent(share: float) -> str:
 
 
 def _drunk_note(run: Run, units: Units) -> str:
-    drunk = run.ledger.out.get("sips", 0.0)
-    told = f"{style.shown(drunk, 'energy', units):.3g} {style.unit_sign('energy', units)}"
-    return f"{told} went with what was drunk (counted from 0 °C)." if drunk else "Nothing was drunk."
+    words = ("went with what was drunk", "came with refills")
+    heats = [abs(run.ledger.out.get(name, 0.0)) for name in LIQUID]
+    told = [f"{shown_energy(heat, units)} {what}" for heat, what in zip(heats, words, strict=True) if heat]
+    return f"{', '.join(told)} (counted from 0 °C)." if told else "Nothing was drunk."
+
+
+def shown_energy(heat: float, units: Units) -> str:
+    """A heat [J] with three digits in the unit of the pictures."""
+    return f"{style.shown(heat, 'energy', units):.3g} {style.unit_sign('energy', units)}"

@@ -7,10 +7,9 @@ from collections.abc import Mapping
 from dataclasses import dataclass
 from typing import Any
 
-from matplotlib.figure import Figure
-
 from cupfem.exchange.run_folder import versions
 from cupfem.figures import (
+    Figure,
     drink_figure,
     field_figure,
     field_frames,
