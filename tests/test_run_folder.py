@@ -20,6 +20,7 @@ import cupfem
 from cupfem.exchange import check_place, write_incomplete, write_run
 from cupfem.exchange.place import _exchanged
 from cupfem.exchange.summary import rounded, summary_json
+from cupfem.touch.felt import pad_verdict
 
 ROOT = Path(__file__).parents[1]
 sys.path.insert(0, str(ROOT / "tests" / "hard_use"))
@@ -136,6 +137,27 @@ def test_the_summary_says_which_defaults_were_used(run, folder):
 def test_keys_are_sorted(folder):
     text = (folder / "summary.json").read_text(encoding="utf-8")
     assert text == json.dumps(json.loads(text), indent=2, sort_keys=True, ensure_ascii=False) + "\n"
+
+
+def test_pads_in_the_summary(tmp_path):
+    """Hold times stand by pad, and the earliest of all at the top; the other pad lets go before it hurts."""
+    pads = [
+        {"height": "50 mm", "width": "6 mm", "pick_up": "10 s"},
+        {"height": "70 mm", "width": "6 mm", "pick_up": "20 s", "release": "20.5 s"},
+    ]
+    serving = cupfem.Serving(duration="60 s", pad=pads)
+    held = cupfem.pour(cupfem.load_cup(CUP), serving, fineness=0.25, companion=False)
+    summary = told(write_run(held, tmp_path / "held"))
+    first, second = summary["pads"]
+    expected = pad_verdict(held, held.pads[0])
+    assert first["hold_time_s"] == pytest.approx(expected.thin, rel=1e-8)
+    assert first["decided_by"] == expected.thin_decided
+    assert (first["height_mm"], first["pick_up_s"]) == (50.0, 10.0)
+    assert second["hold_time_s"] is None
+    assert second["hold_time_at_least_s"] == 0.5
+    assert summary["hold_time_s"] == first["hold_time_s"]
+    assert "hold_time_at_least_s" not in summary
+    assert [key for key in numbers(summary) if not UNIT.search(key)] == []
 
 
 def test_what_is_no_number_is_null(run):

@@ -6,14 +6,15 @@ import csv
 import io
 import json
 import math
-from collections.abc import Mapping
+from collections.abc import Mapping, Sequence
 from typing import Any
 
 import numpy as np
 from numpy.typing import NDArray
 
-from cupfem.run import CAUTION, FREE_WALL, Run
+from cupfem.run import CAUTION, FREE_WALL, PadField, Run
 from cupfem.run.headline import Verdict, uncertainty_lines, verdicts
+from cupfem.touch.felt import pad_verdict
 
 Floats = NDArray[np.float64]
 
@@ -33,8 +34,11 @@ def summary_json(run: Run) -> str:
 
 def summary(run: Run) -> dict[str, Any]:
     """What `summary.json` holds; None for a time that was not reached, beside `..._at_least_s`."""
+    pads = [_pad(run, field) for field in run.pads]
     return {
-        **_figures(run),
+        **_worst(pads),
+        **_bounded(run.figures(), run.serving.duration),
+        "pads": pads,
         "title": {"cup": run.cup.title, "serving": run.serving.title},
         "verdicts": [_verdict(verdict) for verdict in verdicts(run)],
         "uncertainty": {"numerical": _numerical(run), "model": _model(run)},
@@ -68,12 +72,45 @@ def _plain(value: Any) -> Any:
     return value
 
 
-def _figures(run: Run) -> dict[str, float | None]:
-    told = dict(run.figures())
-    for key, value in list(told.items()):
-        if value is None and key.endswith("_s"):
-            told.setdefault(f"{key.removesuffix('_s')}_at_least_s", run.serving.duration)
-    return told
+def _bounded(told: Mapping[str, Any], at_least: float) -> dict[str, Any]:
+    """The figures, and a bound [s] for each time that was not reached (None or infinite)."""
+    bounds = {
+        f"{key.removesuffix('_s')}_at_least_s": at_least
+        for key, value in told.items()
+        if key.endswith("_s") and (value is None or value == math.inf)
+    }
+    return bounds | dict(told)
+
+
+def _pad(run: Run, field: PadField) -> dict[str, Any]:
+    """What a pad felt: hold times for thin and thick skin, and injury on its own."""
+    verdict, pad = pad_verdict(run, field), field.pad
+    times = {
+        "hold_time_s": verdict.thin,
+        "hold_time_thick_skin_s": verdict.thick,
+        "injury_time_s": verdict.injury,
+    }
+    return _bounded(times, verdict.at_least) | {
+        "height_mm": 1e3 * pad.height,
+        "width_mm": 1e3 * pad.width,
+        "pick_up_s": pad.pick_up,
+        "decided_by": verdict.thin_decided,
+        "decided_by_thick_skin": verdict.thick_decided,
+        "hottest_height_mm": 1e3 * verdict.height,
+        "hottest_place": verdict.place,
+    }
+
+
+def _worst(pads: Sequence[Mapping[str, Any]]) -> dict[str, Any]:
+    """The earliest hold times of all pads; nothing without pads."""
+    if not pads:
+        return {}
+    names = ("hold_time_s", "hold_time_thick_skin_s", "injury_time_s")
+    bounds = [f"{name.removesuffix('_s')}_at_least_s" for name in names]
+    worst = {name: min(pad[name] for pad in pads) for name in names}
+    least = {bound: min(pad.get(bound, math.inf) for pad in pads) for bound in bounds}
+    kept = {bound: least[bound] for name, bound in zip(names, bounds, strict=True) if worst[name] == math.inf}
+    return worst | kept
 
 
 def _verdict(verdict: Verdict) -> dict[str, Any]:
