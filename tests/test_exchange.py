@@ -176,7 +176,8 @@ def test_cells_are_biquadratic_and_their_nodes_in_vtk_s_order(written):
 def test_a_wrong_order_of_nodes_is_seen(run, tmp_path):
     """Planted fault: two middle nodes exchanged."""
     grid = section_grid(run.mesh)
-    grid.cells[3, [4, 5]] = grid.cells[3, [5, 4]]
+    ((_, cells),) = grid.blocks
+    cells[3, [4, 5]] = cells[3, [5, 4]]
     (tmp_path / "odd.vtu").write_text(vtu_text(grid, Arrays()), encoding="utf-8")
     assert misplaced_middles(read(tmp_path / "odd.vtu")) > 1e-5
 
@@ -192,7 +193,7 @@ def test_cells_run_counter_clockwise(run, tmp_path, turned):
     order = [0, 3, 2, 1, 7, 6, 5, 4, 8] if turned else slice(None)
     mesh = dataclasses.replace(run.mesh, element_dofs=run.mesh.element_dofs[order])
     grid = section_grid(mesh)
-    assert (shoelace(grid.points, grid.cells) > 0.0).all()
+    assert (shoelace(grid.points, grid.blocks[0][1]) > 0.0).all()
     (tmp_path / "mesh.vtu").write_text(vtu_text(grid, Arrays()), encoding="utf-8")
     assert misplaced_middles(read(tmp_path / "mesh.vtu")) < 1e-12
 
@@ -324,7 +325,7 @@ def test_fewer_pads_leave_no_old_files(held, run, tmp_path):
     ],
 )
 def test_other_cells(tmp_path, kind, number, nodes):
-    grid = Grid(np.arange(3.0 * nodes).reshape(nodes, 3), np.arange(nodes)[None], kind)
+    grid = Grid(np.arange(3.0 * nodes).reshape(nodes, 3), ((kind, np.arange(nodes)[None]),))
     (tmp_path / "one.vtu").write_text(vtu_text(grid, Arrays()), encoding="utf-8")
     cell = read(tmp_path / "one.vtu").GetCell(0)
     assert (cell.GetCellType(), cell.GetNumberOfPoints()) == (number, nodes)
@@ -333,7 +334,7 @@ def test_other_cells(tmp_path, kind, number, nodes):
 @pytest.mark.parametrize("count", [1, 131072, 131073, 300000])
 def test_arrays_of_any_length(tmp_path, count):
     """Shorter than a block of the packed form, exactly one, one more, and several."""
-    grid = Grid(np.random.default_rng(1).random((count, 3)), np.zeros((1, 3), dtype=int), "triangle")
+    grid = Grid(np.random.default_rng(1).random((count, 3)), (("triangle", np.zeros((1, 3), dtype=int)),))
     values = {"v": np.arange(count, dtype=np.float64)}
     whole = {"names": ["board", "cartón", ""]}
     (tmp_path / "long.vtu").write_text(vtu_text(grid, Arrays(points=values, whole=whole)), encoding="utf-8")

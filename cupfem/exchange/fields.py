@@ -2,7 +2,6 @@
 
 from __future__ import annotations
 
-import re
 from collections.abc import Iterator, Mapping
 from dataclasses import dataclass
 from pathlib import Path
@@ -11,10 +10,9 @@ import numpy as np
 from numpy.typing import NDArray
 
 from cupfem.conduction import GasLayer, Solid
-from cupfem.errors import InputError
-from cupfem.exchange.files import explained
 from cupfem.exchange.heat_flux import HeatFlux
-from cupfem.exchange.vtu import Arrays, Grid, pvd_text, vtu_text
+from cupfem.exchange.pvd import write_pvd
+from cupfem.exchange.vtu import Arrays, Grid, vtu_text
 from cupfem.meridian import Meridian
 from cupfem.mesh import SectionMesh
 from cupfem.problem import properties
@@ -58,17 +56,8 @@ def write_fields(run: Run, path: str | Path = "fields.pvd") -> Path:
     InputError
         If the name does not end in `.pvd`, or the place cannot be written to.
     """
-    path = Path(path)
-    if path.suffix != ".pvd":
-        raise InputError("fields", str(path), "the name must end in .pvd", 'write "fields.pvd"')
-    with explained(path):
-        folder = path.with_suffix("")
-        folder.mkdir(exist_ok=True)
-        _clear(path, folder)
-        for suffix, section in sections(run).items():
-            if len(section.times) or not suffix:
-                _write_section(section, path.with_name(f"{path.stem}{suffix}.pvd"), folder)
-    return path
+    parts = {part: _moments(held) for part, held in sections(run).items() if len(held.times) or not part}
+    return write_pvd(path, parts)
 
 
 @dataclass(frozen=True, eq=False)
@@ -104,35 +93,12 @@ def wall_materials(meridian: Meridian, mesh: SectionMesh) -> dict[str, str]:
     return given | ({} if meridian.base is None else {"base": meridian.base.material.name})
 
 
-def _clear(path: Path, folder: Path) -> None:
-    """Remove the files of an earlier writing, which may have had more pads or moments; nothing else."""
-    stem = re.escape(path.stem)
-    for place, name in (
-        (path.parent, rf"{stem}(_pad\d+)?\.pvd"),
-        (folder, rf"{stem}(_pad\d+)?_\d{{4,}}\.vtu"),
-    ):
-        for file in place.iterdir():
-            if re.fullmatch(name, file.name):
-                file.unlink()
-
-
-def _write_section(section: Fields, path: Path, folder: Path) -> None:
-    files = []
-    for index, (time, text) in enumerate(_moments(section)):
-        file = folder / f"{path.stem}_{index:04d}.vtu"
-        file.write_text(text, encoding="utf-8")
-        files.append((time, f"{folder.name}/{file.name}"))
-    path.write_text(pvd_text(files), encoding="utf-8")
-
-
 def _moments(section: Fields) -> Iterator[tuple[float, str]]:
     """Time [s] and file content of each stored field."""
     mesh = section.mesh
     grid, flux = section_grid(mesh), HeatFlux(mesh, section.properties)
-    materials = list(dict.fromkeys(section.materials[region] for region in mesh.regions))
-    names = {"region_names": list(mesh.regions), "material_names": materials}
+    marks, names = marks_and_names(section)
     along, across = mesh.wall_coordinates
-    marks = _marks(mesh, {region: materials.index(section.materials[region]) for region in mesh.regions})
     for time, temperature in zip(section.times, section.temperatures, strict=True):
         arrays = Arrays(
             points={"temperature_degC": temperature, "wall_s_m": along, "wall_n_m": across},
@@ -147,7 +113,7 @@ def section_grid(mesh: SectionMesh) -> Grid:
     kind, cells = KINDS[len(mesh.element_dofs)], mesh.element_dofs.T.copy()
     clockwise = signed_areas(mesh) < 0.0
     cells[clockwise] = cells[clockwise][:, _TURNED[kind]]
-    return Grid(_with_third(mesh.points), cells, kind)
+    return Grid(_with_third(mesh.points), ((kind, cells),))
 
 
 def signed_areas(mesh: SectionMesh) -> Floats:
@@ -156,16 +122,18 @@ def signed_areas(mesh: SectionMesh) -> Floats:
     return np.asarray(0.5 * (r * np.roll(z, -1, axis=0) - np.roll(r, -1, axis=0) * z).sum(axis=0))
 
 
-def _marks(mesh: SectionMesh, of_region: Mapping[str, int]) -> dict[str, NDArray[np.generic]]:
-    """Which region and which material each cell belongs to."""
+def marks_and_names(section: Fields) -> tuple[dict[str, NDArray[np.generic]], dict[str, list[str]]]:
+    """Cell arrays of region and material, one of 0 and 1 per region, and the lists of names they count in."""
+    mesh = section.mesh
+    materials = list(dict.fromkeys(section.materials[region] for region in mesh.regions))
     region, material = np.zeros((2, mesh.element_dofs.shape[1]), dtype=np.int32)
     marks: dict[str, NDArray[np.generic]] = {"region_id": region, "material_id": material}
     for number, (name, elements) in enumerate(mesh.regions.items()):
-        region[elements], material[elements] = number, of_region[name]
+        region[elements], material[elements] = number, materials.index(section.materials[name])
         inside = np.zeros(len(region), dtype=np.uint8)
         inside[elements] = 1
         marks[f"layer_{name}" if name in (*marks, "heat_flux_W_m2") else name] = inside
-    return marks
+    return marks, {"region_names": list(mesh.regions), "material_names": materials}
 
 
 def _with_third(vectors: Floats) -> Floats:

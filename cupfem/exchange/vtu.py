@@ -20,7 +20,14 @@ from numpy.typing import NDArray
 
 Array = NDArray[Any]
 
-CELL_TYPES = {"triangle": (3, 5), "quad": (4, 9), "triangle6": (6, 22), "quad9": (9, 28)}
+CELL_TYPES = {
+    "triangle": (3, 5),
+    "quad": (4, 9),
+    "hexahedron": (8, 12),
+    "wedge": (6, 13),
+    "triangle6": (6, 22),
+    "quad9": (9, 28),
+}
 """Cell -> number of nodes, number of the type (vtkCellType.h)."""
 BLOCK = 1 << 20
 """Bytes compressed at once."""
@@ -35,22 +42,19 @@ _TYPES = {
 
 @dataclass(frozen=True, eq=False)
 class Grid:
-    """Points and cells of one kind.
+    """Points and blocks of cells, one kind each.
 
     Attributes
     ----------
     points:
         `[point, 3]` [m].
-    cells:
-        `[cell, node]`, corners counter-clockwise, then the middles of the sides from the first corner on,
-        then the centre.
-    kind:
-        Key of `CELL_TYPES`.
+    blocks:
+        Key of `CELL_TYPES`, and points `[cell, node]` in VTK's order: of a flat cell the corners
+        counter-clockwise, then the middles of the sides from the first corner on, then the centre.
     """
 
     points: Array
-    cells: Array
-    kind: str
+    blocks: tuple[tuple[str, Array], ...]
 
 
 @dataclass(frozen=True, eq=False)
@@ -64,12 +68,12 @@ class Arrays:
 
 def vtu_text(grid: Grid, arrays: Arrays) -> str:
     """Content of a `.vtu` file."""
-    nodes, number = CELL_TYPES[grid.kind]
-    count = len(grid.cells)
+    counts = [len(cells) for _, cells in grid.blocks]
+    nodes, types = np.repeat([CELL_TYPES[kind] for kind, _ in grid.blocks], counts, axis=0).T
     cells: dict[str, Array | Sequence[str]] = {
-        "connectivity": grid.cells.astype(np.int64).ravel(),
-        "offsets": nodes * np.arange(1, count + 1, dtype=np.int64),
-        "types": np.full(count, number, dtype=np.uint8),
+        "connectivity": np.concatenate([cells.ravel() for _, cells in grid.blocks]).astype(np.int64),
+        "offsets": np.cumsum(nodes, dtype=np.int64),
+        "types": types.astype(np.uint8),
     }
     parts = [
         '<?xml version="1.0"?>',
@@ -77,7 +81,7 @@ def vtu_text(grid: Grid, arrays: Arrays) -> str:
         'compressor="vtkZLibDataCompressor">',
         "<UnstructuredGrid>",
         *_section("FieldData", arrays.whole, whole=True),
-        f'<Piece NumberOfPoints="{len(grid.points)}" NumberOfCells="{count}">',
+        f'<Piece NumberOfPoints="{len(grid.points)}" NumberOfCells="{sum(counts)}">',
         *_section("PointData", arrays.points),
         *_section("CellData", arrays.cells),
         *_section("Points", {"Points": grid.points}),
