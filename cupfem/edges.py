@@ -266,7 +266,7 @@ def gap_of(cup: Cup, index: int, height: float | None = None, pressure: float = 
     at the pressure of the room [Pa] unless the cup gives one.
     """
     layer = cup.layer[index]
-    low, high = cup.layer_range(layer)
+    low, high = cup.spans(layer)[0]
     stack = cup.stack(0.5 * (low + high) if height is None else height)
     place = stack.index(layer)
     return Gap(

@@ -36,6 +36,8 @@ Overrides = Mapping[str, Film]
 EDGES = ("wetted", "dry", "outside", "underside", "heel", "brim")
 FIRST_VOLUME = 10e-6
 """Of a pour that takes a while, what is there at time zero [m3]: there has to be a drink to begin with."""
+TRACE_OF_AIR = 100.0
+"""Pressure [Pa] below which a gap keeps the heat capacity of its air."""
 GAS_TEMPERATURE = 50.0
 """Temperature [degC] at which the heat capacity of the gas in a gap is taken: a thousandth of the board's."""
 
@@ -194,13 +196,15 @@ def solid(material: Material) -> Solid:
 
 
 def _air(pressure: float) -> float:
+    """Heat capacity of the gas in a gap [J/(m3 K)]; a trace of it in a vacuum keeps the matrix regular."""
+    pressure = max(pressure, TRACE_OF_AIR)
     return float(air_density(GAS_TEMPERATURE, pressure)) * float(air_specific_heat(GAS_TEMPERATURE))
 
 
 def _pocket(cup: Cup, index: int) -> Gap:
     """The air left where a solid layer ends under others: between its neighbours' faces."""
-    emissivities = [edges.emissivity_of(cup, layer) for layer in cup.layer]
-    return Gap(emissivities[max(index - 1, 0)], emissivities[min(index + 1, len(emissivities) - 1)])
+    inner, outer = cup.layer[max(index - 1, 0)], cup.layer[min(index + 1, len(cup.layer) - 1)]
+    return Gap(cup.emissivity(inner, "outer"), cup.emissivity(outer, "inner"))
 
 
 # -- edges ---------------------------------------------------------------------------------------------------

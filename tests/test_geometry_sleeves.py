@@ -94,7 +94,7 @@ def test_its_own_materials_come_with_it():
     cup = worn(own)
     assert cup.material("wadding").density.value == 90.0
     clash = CUP.format(sleeve="") + '[material."wadding"]\nlike = "wool felt"\n'
-    with pytest.raises(InputError, match="wadding.*not alike"):
+    with pytest.raises(InputError, match=r"wadding.*not alike"):
         worn(own, Cup.from_text(clash))
 
 
