@@ -3,6 +3,7 @@
 from __future__ import annotations
 
 from collections.abc import Callable, Mapping
+from dataclasses import replace
 
 import numpy as np
 from numpy.typing import NDArray
@@ -16,6 +17,7 @@ from cupfem.pour.record import Recorder, series_times, snapshot_times
 from cupfem.problem import Problem, build
 from cupfem.run import Run, faces_of
 from cupfem.serving import Serving
+from cupfem.touch.holding import verdict
 
 Floats = NDArray[np.float64]
 
@@ -38,6 +40,7 @@ def pour(
     tolerance: float = TOLERANCE,
     films: Mapping[str, Film] | None = None,
     companion: bool = True,
+    hold: bool | None = None,
     progress: Callable[[float], None] | None = None,
 ) -> Run:
     """Run a serving.
@@ -53,6 +56,8 @@ def pour(
         for instance `FluxFunction(f)`; it sees the drink on "wetted", elsewhere the room.
     companion:
         Run a coarser companion too, from which the space error is told.
+    hold:
+        Judge how long the cup can be held; left out: with a companion, with pads, or with a target for it.
     progress:
         Called with the time [s] after each step.
 
@@ -66,10 +71,11 @@ def pour(
     serving = serving or Serving()
     films = dict(films or {})
     run = _march(cup, serving, films, fineness, tolerance, progress)
-    if not companion:
-        return run
-    coarse = _march(cup, serving, films, fineness * COMPANION, tolerance, None)
-    return run.with_space_errors(_space_errors(run, coarse))
+    coarse = _march(cup, serving, films, fineness * COMPANION, tolerance, None) if companion else None
+    asked = serving.target is not None and serving.target.hold_time is not None
+    if companion or serving.pad or asked if hold is None else hold:
+        run = replace(run, touch=verdict(run, coarse))
+    return run if coarse is None else run.with_space_errors(_space_errors(run, coarse))
 
 
 def _march(

@@ -4,6 +4,7 @@ from cupfem.run.headline import CAUTION, COMFORT, FREE_WALL, MOISTURE
 from cupfem.run.pads import PadField
 from cupfem.run.result import Faces, Ledger, Run, Series, faces_of
 from cupfem.run.store import load_run, save_run
+from cupfem.run.touched import HoldFigures
 
 __all__ = [
     "CAUTION",
@@ -11,6 +12,7 @@ __all__ = [
     "FREE_WALL",
     "MOISTURE",
     "Faces",
+    "HoldFigures",
     "Ledger",
     "PadField",
     "Run",

@@ -3,7 +3,7 @@
 from __future__ import annotations
 
 from dataclasses import dataclass
-from typing import TYPE_CHECKING
+from typing import TYPE_CHECKING, Literal
 
 import numpy as np
 from numpy.typing import NDArray
@@ -12,6 +12,7 @@ from cupfem.quantities import Units, format_quantity
 
 if TYPE_CHECKING:
     from cupfem.run.result import Run
+    from cupfem.run.touched import HoldFigures
 
 Floats = NDArray[np.float64]
 
@@ -31,12 +32,16 @@ MOISTURE = "board moisture not modelled: the first two minutes of double walls m
 
 @dataclass(frozen=True)
 class Verdict:
-    """One line of the target: what was asked, what came out [degC], and the margin [K] (negative: failed)."""
+    """One line of the target: what was asked, what came out, and the margin (negative: failed).
+
+    In degC and kelvins, or for a `time` in seconds, infinite where the end was not reached.
+    """
 
     asked: str
     limit: float
     reached: float
     margin: float
+    dimension: Literal["temperature", "time"] = "temperature"
 
     @property
     def passed(self) -> bool:
@@ -66,7 +71,7 @@ def figures(run: Run) -> dict[str, float | None]:
         "heat_lost_by_drink_kJ": -1e-3 * ledger.drink,
         "ledger_residual_relative": ledger.relative_residual,
     }
-    return told
+    return told | ({} if run.touch is None else run.touch.figures())
 
 
 def crossing(time: Floats, values: Floats, limit: float) -> float | None:
@@ -98,7 +103,16 @@ def verdicts(run: Run) -> list[Verdict]:
         )
     if target.wall_below is not None:
         out.append(_wall_verdict(run, target.wall_below, target.between, within, until))
+    if target.hold_time is not None and run.touch is not None:
+        out.append(_hold_verdict(run.touch, target.hold_time))
     return out
+
+
+def _hold_verdict(touch: HoldFigures, asked: float) -> Verdict:
+    """Judged with pain at 0.1 mm; a time that was not reached counts as long as it was tried."""
+    reached = touch.thin if np.isfinite(touch.thin) else touch.at_least
+    place = f"hold time from {1e3 * touch.low:g} to {1e3 * touch.high:g} mm, shortest at {touch.pick_up:g} s"
+    return Verdict(place, asked, reached, reached - asked, "time")
 
 
 def _wall_verdict(
@@ -115,7 +129,7 @@ def _wall_verdict(
 def text(run: Run, units: Units = "si") -> str:
     """Headline figures, verdict and cautions as plain text."""
     told = figures(run)
-    lines = [f"{run.cup.title} - {run.serving.title}", FREE_WALL, ""]
+    lines = [f"{run.cup.title} - {run.serving.title}", *([FREE_WALL] if run.touch is None else []), ""]
     lines += [f"  {name:<44}{value}" for name, value in rows(run, told, units)]
     for verdict in verdicts(run):
         lines.append(f"  {verdict_line(verdict, units)}")
@@ -151,6 +165,7 @@ def rows(run: Run, told: dict[str, float | None], units: Units = "si") -> list[t
             format_quantity(1e-6 * float(told["brimful_capacity_ml"] or 0.0), "volume", units),
         ),
         ("heat that the drink lost", f"{told['heat_lost_by_drink_kJ']:.3g} kJ"),
+        *(run.touch.rows() if run.touch is not None else []),
     ]
 
 
@@ -183,10 +198,13 @@ def uncertainty_lines(run: Run) -> list[str]:
 
 def verdict_line(verdict: Verdict, units: Units = "si") -> str:
     """A verdict as one line."""
+    word = "PASS" if verdict.passed else "FAIL"
+    if verdict.dimension == "time":
+        shown = f"{verdict.limit:g} s asked, {verdict.reached:.3g} s reached, margin {verdict.margin:+.3g} s"
+        return f"{word}  {verdict.asked}: {shown}"
     limit, reached = (
         format_quantity(value, "temperature", units) for value in (verdict.limit, verdict.reached)
     )
-    word = "PASS" if verdict.passed else "FAIL"
     scale, unit = (1.8, "degF") if units == "us" else (1.0, "K")
     margin = f"{scale * verdict.margin:+.1f} {unit}"
     return f"{word}  {verdict.asked}: {limit} asked, {reached} reached, margin {margin}"

@@ -20,6 +20,7 @@ from cupfem.mesh import SectionMesh
 from cupfem.quantities import Units
 from cupfem.run import headline
 from cupfem.run.pads import PadField
+from cupfem.run.touched import HoldFigures
 from cupfem.serving import Serving
 
 Floats = NDArray[np.float64]
@@ -123,6 +124,8 @@ class Run:
     """Films that Python gave instead of the serving's, by edge."""
     pads: tuple[PadField, ...] = ()
     """What the serving's pads felt."""
+    touch: HoldFigures | None = None
+    """How long the cup can be held, where that was asked for."""
 
     @property
     def time(self) -> Floats:

@@ -3,7 +3,7 @@
 from __future__ import annotations
 
 import json
-from dataclasses import dataclass
+from dataclasses import asdict, dataclass
 from pathlib import Path
 from typing import ClassVar
 
@@ -17,6 +17,7 @@ from cupfem.inputs import resolved_toml
 from cupfem.meridian import build as build_meridian
 from cupfem.mesh import build as build_mesh
 from cupfem.run.result import Ledger, Run, Series, faces_of
+from cupfem.run.touched import HoldFigures
 from cupfem.serving import Serving
 
 Floats = NDArray[np.float64]
@@ -82,6 +83,7 @@ def load_run(folder: str | Path) -> Run:
         space_errors=told["space_errors"],
         defaults=tuple(told["defaults"]),
         ranges=tuple(told["ranges"]),
+        touch=None if told["touch"] is None else HoldFigures(**told["touch"]),
         films={edge: LostFilm(edge) for edge in told["films"]},
         **{name: told[name] for name in TOLD},
     )
@@ -106,4 +108,5 @@ def _arrays(run: Run) -> dict[str, Floats]:
     }
     told |= {"counters": dict(run.counters), "space_errors": dict(run.space_errors)}
     told |= {"defaults": list(run.defaults), "ranges": list(run.ranges), "films": list(run.films)}
+    told["touch"] = None if run.touch is None else asdict(run.touch)
     return arrays | {"told": np.array(json.dumps(told))}

@@ -1,0 +1,314 @@
+"""Hold time over heights and pick-ups: the map, the band that cannot be held, the first comfortable moment.
+
+The map comes from columns; the excess of section solves brings it to the hottest place of each pad. Heights
+near an end of a layer, of a blend or of a ridge get section solves of their own, as many as are allowed.
+"""
+
+from __future__ import annotations
+
+from collections.abc import Sequence
+from dataclasses import dataclass
+
+import numpy as np
+from numpy.typing import NDArray
+
+from cupfem.problem import Problem
+from cupfem.run import CAUTION, MOISTURE, HoldFigures, Run
+from cupfem.serving import Pad
+from cupfem.skin import THRESHOLD_SOURCE, get_skin
+from cupfem.touch.contact import Contact, problem_of, touch
+from cupfem.touch.criteria import HoldTimes, judge
+from cupfem.touch.felt import felt, pad_verdict
+from cupfem.touch.rim import Rim, at_hottest, rim_at
+
+Floats = NDArray[np.float64]
+Flags = NDArray[np.bool_]
+
+PICK_UPS = (5.0, 10.0, 20.0, 30.0, 45.0, 60.0, 90.0, 120.0, 180.0, 240.0, 300.0, 450.0)
+"""Pick-ups of a map [s], as far as they lie within the serving."""
+HEIGHTS = 40
+LONGEST = 300.0
+"""Longest hold that is tried [s]."""
+GRIP_BAND = (0.45, 0.72)
+"""Where a cup is gripped, as a share of its height: about 0.5 to 0.67 (habit, from memory), and two thirds in
+the usual test of stiffness."""
+VERDICT_HEIGHTS, VERDICT_PICK_UPS = 5, (10.0, 30.0, 60.0, 120.0, 240.0)
+"""Heights of the grip band and pick-ups [s] of the short verdict."""
+SECTIONS = 5
+"""Most section solves of a map."""
+END_MARGIN = 2e-3
+"""A pad nearer to an end than this [m] is not on an even wall."""
+DEFAULT_PAD = Pad(height="50 mm")
+
+
+@dataclass(frozen=True, eq=False)
+class Hold:
+    """Hold times of a run over heights `[h]` [m] and pick-ups `[p]` [s].
+
+    Attributes
+    ----------
+    times, middle:
+        At the pad's hottest place, and at its middle as the columns have it; each `[p, h]`.
+    contact:
+        What the skin felt at the hottest places.
+    solved:
+        `[h]` heights whose excess comes from a section solve at the height itself.
+    near_end:
+        `[h]` heights where a pad reaches an end of a layer.
+    """
+
+    run: Run
+    pad: Pad
+    heights: Floats
+    pick_ups: Floats
+    times: HoldTimes
+    middle: HoldTimes
+    contact: Contact
+    rims: tuple[Rim, ...]
+    solved: Flags
+    near_end: Flags
+
+    def held_for(self, seconds: float, thick_skin: bool = False) -> Flags:
+        """Whether `[p, h]` the cup can be held for so long."""
+        times = self.times.thick if thick_skin else self.times.thin
+        known = np.where(np.isfinite(times), times, self.times.at_least)
+        return np.asarray(known >= seconds)
+
+    def first_comfortable(self, seconds: float, thick_skin: bool = False) -> list[float | None]:
+        """For each height the first pick-up [s] from which on the cup can be held so long; None: none."""
+        held = self.held_for(seconds, thick_skin)
+        tried = (self.run.serving.duration - self.pick_ups) >= seconds
+        out: list[float | None] = []
+        for column in held.T:
+            good = [bool(column[p:][tried[p:]].all()) and tried[p] for p in range(len(column))]
+            out.append(float(self.pick_ups[good.index(True)]) if any(good) else None)
+        return out
+
+    def band_not_held(self, seconds: float) -> list[tuple[float, float, float] | None]:
+        """For each pick-up (pick-up, lowest, highest height) that cannot be held so long; None: all can."""
+        out: list[tuple[float, float, float] | None] = []
+        for pick_up, held in zip(self.pick_ups, self.held_for(seconds), strict=True):
+            bad = self.heights[~held]
+            out.append((float(pick_up), float(bad.min()), float(bad.max())) if len(bad) else None)
+        return out
+
+    def figures(self) -> HoldFigures:
+        """The worst of the map."""
+        times = self.times
+        thin = _place_of_least(times.thin, times.at_least, self.contact.thin)
+        thick = _place_of_least(times.thick, times.at_least, self.contact.thick)
+        injury = _place_of_least(times.injury, times.at_least, self.contact.thin)
+        height = float(self.heights[thin[1]])
+        rim = self.rims[thin[1]]
+        shift = rim.hottest - rim.height
+        return HoldFigures(
+            thin=float(times.thin[thin]),
+            thick=float(times.thick[thick]),
+            injury=float(times.injury[injury]),
+            at_least=float(times.at_least[thin]),
+            thick_at_least=float(times.at_least[thick]),
+            injury_at_least=float(times.at_least[injury]),
+            thin_decided=str(times.thin_decided[thin]),
+            thick_decided=str(times.thick_decided[thick]),
+            height=height + shift,
+            radius=float(self.run.meridian.outer_radius_at(height + shift)),
+            layer=self.run.meridian.outer_layer_at(height).name,
+            place="pad rim" if abs(abs(shift) - 0.5 * self.pad.width) < END_MARGIN else "within the pad",
+            pick_up=float(self.pick_ups[thin[0]]),
+            low=float(self.heights.min()),
+            high=float(self.heights.max()),
+            skin=self.pad.skin,
+            conductance=float(self.contact.conductance[thin[1]]),
+        )
+
+    def table(self, thick_skin: bool = False) -> str:
+        """Hold time by height (rows) and pick-up (columns) as text, with the cautions."""
+        times = self.times.thick if thick_skin else self.times.thin
+        skin = "thick skin: 43 degC at 0.5 mm" if thick_skin else "thin skin: 43 degC at 0.1 mm"
+        lines = [f"hold time [s], {skin}; rows heights [mm], columns pick-up [s after the pour]"]
+        lines.append("        " + "".join(f"{pick_up:>8g}" for pick_up in self.pick_ups))
+        for index in np.argsort(self.heights)[::-1]:
+            mark = "*" if self.solved[index] else "~" if self.near_end[index] else " "
+            cells = [
+                _cell(*pair) for pair in zip(times[:, index], self.times.at_least[:, index], strict=True)
+            ]
+            lines.append(f"{1e3 * self.heights[index]:>7.4g}{mark}" + "".join(cells))
+        lines += ["", *self.notes()]
+        return "\n".join(lines)
+
+    def notes(self) -> list[str]:
+        """What the figures rest on."""
+        worst = self.figures()
+        out = ["* section solve at this height, ~ near an end of a layer; > not reached within that time"]
+        out += [f"{name.strip()}: {value}" for name, value in worst.rows()]
+        contact = f"contact conductance {worst.conductance:.4g} W/(m2 K), within half to twice"
+        out.append(f"skin: {self.pad.skin}; {contact}")
+        out.append(f"surface thresholds: {THRESHOLD_SOURCE}")
+        if any(layer.material.surface_class == "board" for layer in self.run.meridian.layers):
+            out.append(f"model: {MOISTURE}")
+        return [*out, CAUTION]
+
+
+def _cell(time: float, at_least: float) -> str:
+    shown = f"{time:.3g}" if np.isfinite(time) else f">{at_least:.3g}"
+    return f"{shown:>8}"
+
+
+def _place_of_least(times: Floats, at_least: Floats, felt: Floats) -> tuple[int, int]:
+    """`(p, h)` of the shortest time; where none was reached, of the hottest skin."""
+    reached = bool(np.isfinite(times).any())
+    flat = np.argmin(times) if reached else np.argmax(felt.max(axis=0))
+    pick_up, height = np.unravel_index(int(flat), times.shape)
+    return int(pick_up), int(height)
+
+
+def hold_map(
+    run: Run,
+    heights: Floats,
+    pick_ups: Floats,
+    *,
+    pad: Pad = DEFAULT_PAD,
+    longest: float = LONGEST,
+    sections: int = SECTIONS,
+    problem: Problem | None = None,
+) -> Hold:
+    """Hold times at heights [m] and pick-ups [s] of a run.
+
+    Parameters
+    ----------
+    pad:
+        The finger; its height, pick-up and release do not count here.
+    longest:
+        Longest hold that is tried [s].
+    sections:
+        Most section solves; at least one for each kind of wall.
+    """
+    problem = problem or problem_of(run)
+    contact = touch(
+        run,
+        heights,
+        pick_ups,
+        longest,
+        skin=get_skin(pad.skin),
+        conductance=pad.contact,
+        gap_resistance=pad.gap_resistance,
+        problem=problem,
+    )
+    near_end = np.array([_near_end(run, float(height), pad.width) for height in heights])
+    rims, solved = _rims(run, problem, pad, heights, float(np.median(pick_ups)), near_end, sections)
+    hottest = at_hottest(contact, rims)
+    return Hold(
+        run, pad, heights, pick_ups, judge(hottest), judge(contact), hottest, tuple(rims), solved, near_end
+    )
+
+
+def _rims(
+    run: Run, problem: Problem, pad: Pad, heights: Floats, pick_up: float, near_end: Flags, most: int
+) -> tuple[list[Rim], Flags]:
+    """Excess for each height, and which heights were solved themselves."""
+    kinds = [(_kind(run, float(height)), bool(end)) for height, end in zip(heights, near_end, strict=True)]
+    chosen = _chosen(kinds, most)
+    found: dict[int, Rim] = {}
+    for index in chosen:
+        place = float(np.clip(heights[index], run.meridian.floor + 0.5 * pad.width,
+                              run.meridian.height - 0.5 * pad.width))  # fmt: skip
+        found[index] = rim_at(run, problem, pad.model_copy(update={"height": place, "pick_up": pick_up}))
+    rims = []
+    for index in range(len(heights)):
+        same = [each for each in found if kinds[each] == kinds[index]] or list(found)
+        nearest = min(same, key=lambda each: abs(heights[each] - heights[index]))
+        rims.append(found[nearest])
+    return rims, np.isin(np.arange(len(heights)), chosen)
+
+
+def _chosen(kinds: Sequence[tuple[tuple[str, ...], bool]], most: int) -> list[int]:
+    """Heights to solve: the middle one of each kind, then further ones near ends."""
+    chosen = []
+    for kind in dict.fromkeys(kinds):
+        places = [index for index, each in enumerate(kinds) if each == kind]
+        chosen.append(places[len(places) // 2])
+    rest = [index for index, kind in enumerate(kinds) if kind[1] and index not in chosen]
+    for index in rest:
+        if len(chosen) < most:
+            chosen.append(index)
+    return sorted(chosen)
+
+
+def _kind(run: Run, height: float) -> tuple[str, ...]:
+    return tuple(layer.name for layer in run.meridian.layers if float(layer.thickness_at(height)) > 1e-9)
+
+
+def _near_end(run: Run, height: float, width: float) -> bool:
+    """Whether a pad at a height reaches an end of a layer within the wall."""
+    reach = 0.5 * width + END_MARGIN
+    ends = [end for layer in run.meridian.layers for end in (*layer.reach, layer.low, layer.high)]
+    inner = [end for end in ends if 1e-6 < end < run.meridian.height - 1e-6]
+    return any(abs(end - height) < reach for end in inner)
+
+
+def default_heights(run: Run, count: int = HEIGHTS) -> Floats:
+    """Even heights over the wall beside the drink [m]."""
+    low, high = run.meridian.floor, run.meridian.height
+    margin = 0.03 * (high - low)
+    return np.linspace(low + margin, high - margin, count)
+
+
+def default_pick_ups(duration: float) -> Floats:
+    """Pick-ups [s] within the first two thirds of a serving."""
+    given = np.array([pick_up for pick_up in PICK_UPS if pick_up <= 0.67 * duration])
+    return given if len(given) else np.array([0.5 * duration])
+
+
+def grip_band(run: Run) -> tuple[float, float]:
+    """Heights between which a cup is gripped [m]: the target's, or the usual band."""
+    target = run.serving.target
+    if target is not None and target.between is not None:
+        return target.between
+    low, high = (share * run.meridian.height for share in GRIP_BAND)
+    return max(low, run.meridian.floor), high
+
+
+def verdict(run: Run, coarse: Run | None = None) -> HoldFigures:
+    """The short verdict: the serving's own pads, or the worst of the grip band and of a few pick-ups.
+
+    `coarse` is a coarser run of the same, on which the section solve is done.
+    """
+    if run.pads:
+        return _of_pads(run)
+    target, duration = run.serving.target, run.serving.duration
+    asked = 0.0 if target is None or target.hold_time is None else target.hold_time
+    last = max(min(duration - asked, 0.8 * duration), 0.5 * duration)
+    pick_ups = np.array([time for time in VERDICT_PICK_UPS if time <= last])
+    pick_ups = pick_ups if len(pick_ups) else np.array([0.5 * duration])
+    heights = np.linspace(*grip_band(run), VERDICT_HEIGHTS)
+    longest = max(LONGEST, 1.05 * asked)
+    return hold_map(coarse or run, heights, pick_ups, longest=longest, sections=1).figures()
+
+
+def _of_pads(run: Run) -> HoldFigures:
+    """The worst of a run's own pads."""
+    told = [(pad_verdict(run, field), field) for field in run.pads]
+    thin, field = min(told, key=lambda each: (each[0].thin, -each[0].at_least))
+    thick = min((each for each, _ in told), key=lambda each: (each.thick, -each.at_least))
+    injury = min((each for each, _ in told), key=lambda each: (each.injury, -each.at_least))
+    contact = felt(run, field)
+    place = int(np.argmin(np.abs(field.heights - thin.height)))
+    return HoldFigures(
+        thin=thin.thin,
+        thick=thick.thick,
+        injury=injury.injury,
+        at_least=thin.at_least,
+        thick_at_least=thick.at_least,
+        injury_at_least=injury.at_least,
+        thin_decided=thin.thin_decided,
+        thick_decided=thick.thick_decided,
+        height=thin.height,
+        radius=float(run.meridian.outer_radius_at(thin.height)),
+        layer=run.meridian.outer_layer_at(thin.height).name,
+        place=thin.place,
+        pick_up=field.pad.pick_up,
+        low=min(float(field.heights[0]) for field in run.pads),
+        high=max(float(field.heights[-1]) for field in run.pads),
+        skin=field.pad.skin,
+        conductance=float(contact.conductance[place]),
+    )
