@@ -110,9 +110,9 @@ def _mark_crossings(axes: Axes, run: Run, units: Units) -> None:
 
 def heat_figure(run: Run, units: Units = "si") -> Figure:
     """Heat flows against time at the left, heats over the whole run at the right."""
-    figure = style.new_figure(11.0, 4.9, f"{run.cup.title}: where the heat goes", _drunk_note(run, units))
-    _flows(style.add_axes(figure, 0.75, 0.8, 5.6, 0.75), run, units)
-    _totals(style.add_axes(figure, 8.0, 0.8, 0.75, 0.75), run, units)
+    figure = style.new_figure(11.4, 4.9, f"{run.cup.title}: where the heat goes", _drunk_note(run, units))
+    _flows(style.add_axes(figure, 0.75, 0.8, 5.95, 0.75), run, units)
+    _totals(style.add_axes(figure, 8.35, 0.8, 0.75, 0.75), run, units)
     return figure
 
 
@@ -147,7 +147,7 @@ def _flows(axes: Axes, run: Run, units: Units) -> None:
     lowest = min((float(flow[late].min()) for flow in flows.values()), default=0.0)
     axes.set_ylim(min(0.0, 1.05 * lowest), 1.05 * highest)
     style.label_axes(axes, "time after the pour", f"heat flow [{style.unit_sign('heat_flow', units)}]")
-    axes.set_title("against time", size=style.NORMAL, loc="left")
+    axes.set_title("against time", y=1.0, size=style.NORMAL, loc="left")
     style.label_right(axes, [float(flow[-1]) for flow in flows.values()], list(flows), colours)
 
 

@@ -67,7 +67,7 @@ def section_figure(drawn: Drawn | Run, units: Units = "si") -> Figure:
         _detail(detail, sheet, box)
         _mark(axes, letter, box)
         ratio = _scale(detail) / _scale(axes)
-        detail.set_title(f"{letter}  {what}, {ratio:.0f} times larger", size=style.NORMAL, loc="left")
+        detail.set_title(f"{letter}  {what}, {ratio:.0f} times larger", y=1.0, size=style.NORMAL, loc="left")
     _layer_list(figure, sheet)
     return figure
 

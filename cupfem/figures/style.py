@@ -100,6 +100,7 @@ def inches(axes: Axes) -> tuple[float, float]:
 
 def plain(axes: Axes) -> None:
     """Light axes: two spines, small ticks, a faint grid behind."""
+    axes.set_title("", y=1.0)  # a fixed place: finding a free one measures all ticks, a tenth of the time
     axes.tick_params(labelsize=SMALL, colors=INK, length=3)
     for side in ("top", "right"):
         axes.spines[side].set_visible(False)

@@ -108,7 +108,7 @@ def wall_map(run: Run, units: Units = "si") -> Figure:
     )
     bar = figure.colorbar(ScalarMappable(norm, colours), cax=figure.add_axes((0.885, 0.174, 0.018, 0.69)))
     bar.ax.tick_params(labelsize=style.SMALL, length=2)
-    bar.ax.set_title(style.unit_sign("temperature", units), size=style.NORMAL)
+    bar.ax.set_title(style.unit_sign("temperature", units), y=1.0, size=style.NORMAL)
     figure.text(
         0.985, 0.08 / 4.6, f"double line: {style.degrees(COMFORT, units)};  blue: level of the drink",
         size=style.SMALL, color=style.QUIET, ha="right", va="bottom",
