@@ -5,12 +5,14 @@ from pathlib import Path
 
 from cupfem.cup import cup_schema, sleeve_schema
 from cupfem.serving import serving_schema
+from cupfem.vary import plan_schema
 
 HERE = Path(__file__).parent
 SCHEMAS = {
     "cup.schema.json": cup_schema,
     "sleeve.schema.json": sleeve_schema,
     "serving.schema.json": serving_schema,
+    "plan.schema.json": plan_schema,
 }
 
 
