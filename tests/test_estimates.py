@@ -13,7 +13,6 @@ from cupfem.estimates import (
     Effective,
     Face,
     HalfSpace,
-    Heated,
     Station,
     TwoNode,
     WallLayer,
