@@ -2,7 +2,8 @@
 
 from cupfem.exchange.fields import write_fields
 from cupfem.exchange.place import check_place
+from cupfem.exchange.revolved import write_revolved
 from cupfem.exchange.run_folder import write_incomplete, write_run
 from cupfem.exchange.section import read_section
 
-__all__ = ["check_place", "read_section", "write_fields", "write_incomplete", "write_run"]
+__all__ = ["check_place", "read_section", "write_fields", "write_incomplete", "write_revolved", "write_run"]

@@ -24,7 +24,6 @@ CELL_TYPES = {
     "triangle": (3, 5),
     "quad": (4, 9),
     "hexahedron": (8, 12),
-    "wedge": (6, 13),
     "triangle6": (6, 22),
     "quad9": (9, 28),
 }
