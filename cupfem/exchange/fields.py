@@ -12,7 +12,7 @@ from numpy.typing import NDArray
 from cupfem.conduction import GasLayer, Solid
 from cupfem.exchange.heat_flux import HeatFlux
 from cupfem.exchange.pvd import write_pvd
-from cupfem.exchange.vtu import Arrays, Grid, vtu_text
+from cupfem.exchange.vtu import Arrays, Grid, Template
 from cupfem.meridian import Meridian
 from cupfem.mesh import SectionMesh
 from cupfem.problem import properties
@@ -96,16 +96,17 @@ def wall_materials(meridian: Meridian, mesh: SectionMesh) -> dict[str, str]:
 def _moments(section: Fields) -> Iterator[tuple[float, str]]:
     """Time [s] and file content of each stored field."""
     mesh = section.mesh
-    grid, flux = section_grid(mesh), HeatFlux(mesh, section.properties)
-    marks, names = marks_and_names(section)
+    flux, (marks, names) = HeatFlux(mesh, section.properties), marks_and_names(section)
     along, across = mesh.wall_coordinates
+    fixed = Arrays(points={"wall_s_m": along, "wall_n_m": across}, cells=marks, whole=names)
+    template = Template(section_grid(mesh), fixed)
     for time, temperature in zip(section.times, section.temperatures, strict=True):
-        arrays = Arrays(
-            points={"temperature_degC": temperature, "wall_s_m": along, "wall_n_m": across},
-            cells={**marks, "heat_flux_W_m2": _with_third(flux.at(temperature))},
-            whole={"TimeValue": np.array([time]), **names},
+        changing = Arrays(
+            points={"temperature_degC": temperature},
+            cells={"heat_flux_W_m2": _with_third(flux.at(temperature))},
+            whole={"TimeValue": np.array([time])},
         )
-        yield float(time), vtu_text(grid, arrays)
+        yield float(time), template.text(changing)
 
 
 def section_grid(mesh: SectionMesh) -> Grid:

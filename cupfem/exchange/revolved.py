@@ -13,7 +13,7 @@ from cupfem.errors import InputError
 from cupfem.exchange.fields import Fields, marks_and_names, section_grid, sections
 from cupfem.exchange.heat_flux import HeatFlux
 from cupfem.exchange.pvd import write_pvd
-from cupfem.exchange.vtu import Arrays, Grid, vtu_text
+from cupfem.exchange.vtu import Arrays, Grid, Template
 from cupfem.run import Run
 
 Floats = NDArray[np.float64]
@@ -63,8 +63,8 @@ class Revolution:
 def revolve(section: Grid, sectors: int) -> Revolution:
     """Turn a section of quadrilaterals round its axis.
 
-    A point on the axis stays one point, so that cells there are hexahedra with corners in common. (Wedges would
-    do, but VTK 9.7 has two minds about their order: its volumes take one, the sides that it draws the other.)
+    A point on the axis stays one point, so that cells there are hexahedra with corners in common. (Wedges
+    would do, but VTK 9.7 reads their order in two ways: one for volumes, another for the sides it draws.)
     """
     cells = section.blocks[0][1][:, :4]
     radius = section.points[:, 0]
@@ -95,16 +95,20 @@ def _moments(section: Fields, sectors: int) -> Iterator[tuple[float, str]]:
     """Time [s] and file content of each stored field."""
     mesh = section.mesh
     body = revolve(section_grid(mesh), sectors)
-    flux = HeatFlux(mesh, section.properties)
-    marks, names = marks_and_names(section)
-    marks = {name: values[body.element] for name, values in marks.items()}
+    flux, (marks, names) = HeatFlux(mesh, section.properties), marks_and_names(section)
     along, across = mesh.wall_coordinates[:, body.dof]
+    fixed = Arrays(
+        points={"wall_s_m": along, "wall_n_m": across},
+        cells={name: values[body.element] for name, values in marks.items()},
+        whole=names,
+    )
+    template = Template(body.grid, fixed)
     for time, temperature in zip(section.times, section.temperatures, strict=True):
         outwards, upwards = flux.at(temperature)[:, body.element]
         vectors = [outwards * np.cos(body.angle), outwards * np.sin(body.angle), upwards]
-        arrays = Arrays(
-            points={"temperature_degC": temperature[body.dof], "wall_s_m": along, "wall_n_m": across},
-            cells={**marks, "heat_flux_W_m2": np.column_stack(vectors)},
-            whole={"TimeValue": np.array([time]), **names},
+        changing = Arrays(
+            points={"temperature_degC": temperature[body.dof]},
+            cells={"heat_flux_W_m2": np.column_stack(vectors)},
+            whole={"TimeValue": np.array([time])},
         )
-        yield float(time), vtu_text(body.grid, arrays)
+        yield float(time), template.text(changing)

@@ -19,6 +19,7 @@ import numpy as np
 from numpy.typing import NDArray
 
 Array = NDArray[Any]
+Named = Mapping[str, Array | Sequence[str]]
 
 CELL_TYPES = {
     "triangle": (3, 5),
@@ -65,31 +66,51 @@ class Arrays:
     whole: Mapping[str, Array | Sequence[str]] = field(default_factory=dict)
 
 
+class Template:
+    """A `.vtu` file whose grid and fixed arrays are packed once, for many moments."""
+
+    def __init__(self, grid: Grid, fixed: Arrays | None = None):
+        fixed = fixed or Arrays()
+        self._whole = _elements(fixed.whole, whole=True)
+        self._points, self._cells = _elements(fixed.points), _elements(fixed.cells)
+        self._grid = _grid_elements(grid)
+        count = sum(len(cells) for _, cells in grid.blocks)
+        self._piece = f'<Piece NumberOfPoints="{len(grid.points)}" NumberOfCells="{count}">'
+
+    def text(self, changing: Arrays) -> str:
+        """Content of the file of a moment."""
+        parts = [
+            '<?xml version="1.0"?>',
+            '<VTKFile type="UnstructuredGrid" version="1.0" byte_order="LittleEndian" header_type="UInt64" '
+            'compressor="vtkZLibDataCompressor">',
+            "<UnstructuredGrid>",
+            *_section("FieldData", _elements(changing.whole, whole=True) + self._whole),
+            self._piece,
+            *_section("PointData", _elements(changing.points) + self._points),
+            *_section("CellData", self._cells + _elements(changing.cells)),
+            *self._grid,
+            "</Piece>",
+            "</UnstructuredGrid>",
+            "</VTKFile>",
+        ]
+        return "\n".join(parts) + "\n"
+
+
 def vtu_text(grid: Grid, arrays: Arrays) -> str:
-    """Content of a `.vtu` file."""
+    """Content of a single `.vtu` file."""
+    return Template(grid).text(arrays)
+
+
+def _grid_elements(grid: Grid) -> list[str]:
     counts = [len(cells) for _, cells in grid.blocks]
     nodes, types = np.repeat([CELL_TYPES[kind] for kind, _ in grid.blocks], counts, axis=0).T
-    cells: dict[str, Array | Sequence[str]] = {
+    cells: Named = {
         "connectivity": np.concatenate([cells.ravel() for _, cells in grid.blocks]).astype(np.int64),
         "offsets": np.cumsum(nodes, dtype=np.int64),
         "types": types.astype(np.uint8),
     }
-    parts = [
-        '<?xml version="1.0"?>',
-        '<VTKFile type="UnstructuredGrid" version="1.0" byte_order="LittleEndian" header_type="UInt64" '
-        'compressor="vtkZLibDataCompressor">',
-        "<UnstructuredGrid>",
-        *_section("FieldData", arrays.whole, whole=True),
-        f'<Piece NumberOfPoints="{len(grid.points)}" NumberOfCells="{sum(counts)}">',
-        *_section("PointData", arrays.points),
-        *_section("CellData", arrays.cells),
-        *_section("Points", {"Points": grid.points}),
-        *_section("Cells", cells),
-        "</Piece>",
-        "</UnstructuredGrid>",
-        "</VTKFile>",
-    ]
-    return "\n".join(parts) + "\n"
+    points: Named = {"Points": grid.points}
+    return [*_section("Points", _elements(points)), *_section("Cells", _elements(cells))]
 
 
 def pvd_text(files: Iterable[tuple[float, str]]) -> str:
@@ -99,8 +120,12 @@ def pvd_text(files: Iterable[tuple[float, str]]) -> str:
     return "\n".join(['<?xml version="1.0"?>', head, "<Collection>", *lines, "</Collection>", "</VTKFile>\n"])
 
 
-def _section(tag: str, arrays: Mapping[str, Array | Sequence[str]], whole: bool = False) -> list[str]:
-    return [f"<{tag}>", *(_data_array(name, given, whole) for name, given in arrays.items()), f"</{tag}>"]
+def _section(tag: str, elements: list[str]) -> list[str]:
+    return [f"<{tag}>", *elements, f"</{tag}>"]
+
+
+def _elements(arrays: Named, whole: bool = False) -> list[str]:
+    return [_data_array(name, given, whole) for name, given in arrays.items()]
 
 
 def _data_array(name: str, given: Array | Sequence[str], whole: bool) -> str:
