@@ -17,8 +17,9 @@ from cupfem.vary.pools import Pool
 from cupfem.vary.store import Result, Store
 from cupfem.vary.worker import run_chunk
 
-CHUNK = 0.25
-"""Work of a chunk [s]: a thousand times the cost of sending it, and all that a kill can lose per worker."""
+CHUNK = 0.05
+"""Work of a chunk [s]: a hundred times the cost of sending it. Of cases that are shorter a kill can lose so
+much finished work per worker; of longer ones, of which a chunk has one, nothing that finished."""
 LARGEST_CHUNK = 256
 DEATHS = 3
 """How often a case may be under way when a worker dies, before it is given up."""

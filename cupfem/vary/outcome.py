@@ -190,7 +190,7 @@ def goal_of(key: str, limit: Limit) -> Goal:
 def _in_figure_unit(key: str, value: object) -> float | None:
     if value is None:
         return None
-    unit = key.rpartition("_")[2]
+    unit = key.rpartition("_")[2] if "_" in key else ""
     if unit not in UNITS:
         return number(f"limits.{key}", value, "number")
     return in_unit(number(f"limits.{key}", value, UNITS[unit]), unit, UNITS[unit])
