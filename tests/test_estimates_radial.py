@@ -9,9 +9,11 @@ from oracles import hollow_transient, lumped, stirred
 from cupfem.estimates import (
     Face,
     LumpedDrink,
+    RadialWall,
     Station,
     WallLayer,
     steady,
+    surface_loss,
     transient,
 )
 from cupfem.estimates.rosenbrock import Path, Step, step
@@ -23,6 +25,7 @@ from cupfem.films import (
 )
 from cupfem.fluids import constant_liquid
 from cupfem.gaps import Gap
+from cupfem.serving import Serving
 
 HELD = FixedFilm(1e9)  # W/(m2 K); holds the face of any wall here to 1e-4 K and better
 
@@ -170,6 +173,14 @@ def test_a_contact_is_a_step_of_temperature():
     assert found == pytest.approx([100.0, 166.442953, 233.557047, 300.0], abs=2e-3)
 
 
+def test_the_wall_stores_what_its_volume_holds():
+    """Sum of the mass matrix, per radian and length: rho c (r_out^2 - r_in^2) / 2 of all layers."""
+    place = cup_wall()
+    square = np.diff(np.square(place.radii))
+    expected = 0.5 * sum(layer.heat_capacity * part for layer, part in zip(place.layers, square, strict=True))
+    assert RadialWall(place, 85.0).mass.sum() == pytest.approx(expected, rel=1e-12)
+
+
 # -- the drink -----------------------------------------------------------------------------------------------
 
 
@@ -200,6 +211,19 @@ def test_a_drink_that_loses_heat_at_its_surface():
     found = transient(place, 100.0, drink(250e-6, 0.02, loss=30.0))
     assert found.drink(100.0) == pytest.approx(85.0 - 3000.0 / (250e-6 * 970.0 * 4190.0), abs=1e-3)
     assert found.outside(100.0) < 85.0
+
+
+def test_an_open_surface_loses_vapour_warmth_and_radiation():
+    """M. M. Shah, HVAC&R Research 8 (2002) 125: 5603 W/m2 latent at 80 in 20 degC, 50 %.
+
+    Times the freeboard factor 0.75; the warmth by the closure, the radiation of 0.96 is Stefan's law.
+    """
+    serving = Serving.from_text('[room]\ntemperature = "20 degC"\nhumidity = 0.5')
+    flux = surface_loss(serving)(0.04, 80.0) / (math.pi * 0.04**2)
+    radiation = 0.96 * 5.670374419e-8 * (353.15**4 - 293.15**4)
+    warmth = flux - radiation - 0.75 * 5603.0
+    assert 0.75 * 300.0 < warmth < 0.75 * 600.0
+    assert surface_loss(serving)(0.02, 80.0) < 0.3 * surface_loss(serving)(0.04, 80.0)
 
 
 def test_a_falling_level_warms_the_rest_less():
