@@ -6,13 +6,13 @@ import tomllib
 from pathlib import Path
 
 import pytest
+from shipped import CUPS
 
 from cupfem.cup import Cup, Layer, Outline, cup_schema, load_cup
 from cupfem.errors import InputError
 from cupfem.inputs import defaults_used, resolved_toml
 
 ROOT = Path(__file__).parents[1]
-CUPS = sorted(path for path in (ROOT / "geometries").glob("*.toml") if not path.name.startswith("serving"))
 
 TUBE = """
 base = "none"

@@ -3,12 +3,11 @@
 Closed forms: frusta and the Pappus-Guldin theorem (any handbook of geometry).
 """
 
-from pathlib import Path
-
 import numpy as np
 import pytest
 from hypothesis import given
 from hypothesis import strategies as st
+from shipped import CUPS
 from verification.bodies import section
 
 import cupfem
@@ -16,9 +15,6 @@ from cupfem import meridian
 from cupfem.axisymmetry import EdgeQuadrature, Measure, volume_moments
 from cupfem.mesh import build
 
-CUPS = sorted(
-    path for path in (Path(__file__).parents[1] / "geometries").glob("*.toml") if "serving" not in path.name
-)
 WHOLE_EDGES = ("inside", "outside", "heel", "brim", "floor", "underside", "skirt")
 
 
