@@ -18,6 +18,7 @@ if TYPE_CHECKING:
     from cupfem.cup import Cup, load_cup
     from cupfem.errors import ConvergenceError, CupfemError, InputError
     from cupfem.exchange import write_fields
+    from cupfem.hold import hold
     from cupfem.materials import library
     from cupfem.pour import pour
     from cupfem.run import Run, load_run
@@ -35,6 +36,7 @@ __all__ = [
     "Run",
     "Serving",
     "Target",
+    "hold",
     "library",
     "load_cup",
     "load_run",
@@ -53,6 +55,7 @@ _HOME = {
     "Run": "run",
     "Serving": "serving",
     "Target": "serving",
+    "hold": "hold",
     "library": "materials",
     "load_cup": "cup",
     "load_run": "run",

@@ -11,15 +11,17 @@ from __future__ import annotations
 from collections.abc import Mapping
 from dataclasses import dataclass, replace
 from types import MappingProxyType
+from typing import Literal
 
 import numpy as np
 from numpy.typing import ArrayLike, NDArray
 
 from cupfem.errors import InputError, nearest
-from cupfem.materials import Mark, SurfaceClass
 from cupfem.quantities import ZERO_CELSIUS
 
 Floats = NDArray[np.float64]
+Mark = Literal["confirmed", "from memory, not re-checked", "derived", "invented", "user"]
+SurfaceClass = Literal["board", "plastic", "glazed", "metal"]
 
 PAIN = 43.0
 """Temperature [degC] at which pain begins: the heat-gated channel TRPV1 opens above it (Dirler, Winkler,

@@ -8,7 +8,7 @@ pick-ups, c = p x h columns (pick-ups outermost), n nodes.
 from __future__ import annotations
 
 from collections.abc import Callable
-from dataclasses import dataclass
+from dataclasses import dataclass, replace
 from itertools import pairwise
 
 import numpy as np
@@ -66,6 +66,30 @@ class Contact:
     skin: Skin
     skins: Floats
     room: Floats
+
+    def chosen(self, columns: Ints, heights: Floats) -> Contact:
+        """The contact of chosen columns `[p, h]`, told under heights `[h]` [m] of their own."""
+        count = len(self.heights)
+        flat = (columns + count * np.arange(len(self.pick_ups))[:, None]).ravel()
+        place = columns[0]
+
+        def taken(values: Floats) -> Floats:
+            return np.take_along_axis(values, columns[None], axis=2)
+
+        return replace(
+            self,
+            heights=heights,
+            thin=taken(self.thin),
+            thick=taken(self.thick),
+            surface=taken(self.surface),
+            wall=taken(self.wall),
+            free=taken(self.free),
+            damage=taken(self.damage),
+            classes=tuple(self.classes[each] for each in place),
+            conductance=self.conductance[place],
+            skins=self.skins[:, flat],
+            room=self.room[flat],
+        )
 
 
 def touch(

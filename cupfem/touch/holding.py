@@ -7,11 +7,12 @@ near an end of a layer, of a blend or of a ridge get section solves of their own
 from __future__ import annotations
 
 from collections.abc import Sequence
-from dataclasses import dataclass
+from dataclasses import dataclass, replace
 
 import numpy as np
 from numpy.typing import NDArray
 
+from cupfem.errors import InputError
 from cupfem.problem import Problem
 from cupfem.run import CAUTION, MOISTURE, HoldFigures, Run
 from cupfem.serving import Pad
@@ -36,6 +37,10 @@ VERDICT_HEIGHTS, VERDICT_PICK_UPS = 5, (10.0, 30.0, 60.0, 120.0, 240.0)
 """Heights of the grip band and pick-ups [s] of the short verdict."""
 SECTIONS = 5
 """Most section solves of a map."""
+BESIDE = (-0.5, -0.25, 0.25, 0.5)
+"""Where further columns of a pad on an uneven wall stand, in widths from its middle."""
+JUDGED_AT = 30.0
+"""Time of touching [s] at which the hottest column under such a pad is chosen."""
 END_MARGIN = 2e-3
 """A pad nearer to an end than this [m] is not on an even wall."""
 DEFAULT_PAD = Pad(height="50 mm")
@@ -98,9 +103,9 @@ class Hold:
         thin = _place_of_least(times.thin, times.at_least, self.contact.thin)
         thick = _place_of_least(times.thick, times.at_least, self.contact.thick)
         injury = _place_of_least(times.injury, times.at_least, self.contact.thin)
-        height = float(self.heights[thin[1]])
         rim = self.rims[thin[1]]
         shift = rim.hottest - rim.height
+        height = float(self.heights[thin[1]]) + shift
         return HoldFigures(
             thin=float(times.thin[thin]),
             thick=float(times.thick[thick]),
@@ -110,8 +115,8 @@ class Hold:
             injury_at_least=float(times.at_least[injury]),
             thin_decided=str(times.thin_decided[thin]),
             thick_decided=str(times.thick_decided[thick]),
-            height=height + shift,
-            radius=float(self.run.meridian.outer_radius_at(height + shift)),
+            height=height,
+            radius=float(self.run.meridian.outer_radius_at(height)),
             layer=self.run.meridian.outer_layer_at(height).name,
             place="pad rim" if abs(abs(shift) - 0.5 * self.pad.width) < END_MARGIN else "within the pad",
             pick_up=float(self.pick_ups[thin[0]]),
@@ -139,7 +144,8 @@ class Hold:
     def notes(self) -> list[str]:
         """What the figures rest on."""
         worst = self.figures()
-        out = ["* section solve at this height, ~ near an end of a layer; > not reached within that time"]
+        out = ["* section solve at this height; > not reached within that time"]
+        out.append("~ pad across an end of a layer or the level: the hottest column under it")
         out += [f"{name.strip()}: {value}" for name, value in worst.rows()]
         contact = f"contact conductance {worst.conductance:.4g} W/(m2 K), within half to twice"
         out.append(f"skin: {self.pad.skin}; {contact}")
@@ -183,10 +189,14 @@ def hold_map(
     sections:
         Most section solves; at least one for each kind of wall.
     """
+    _check_fit(run, heights, pad)
     problem = problem or problem_of(run)
-    contact = touch(
+    near_end = np.array([_near_end(run, float(height), pad.width, pick_ups) for height in heights])
+    rims, solved = _rims(run, problem, pad, heights, float(np.median(pick_ups)), near_end, sections)
+    tried = np.unique(np.concatenate([heights, *_beside(run, heights[near_end & ~solved], pad.width)]))
+    columns = touch(
         run,
-        heights,
+        tried,
         pick_ups,
         longest,
         skin=get_skin(pad.skin),
@@ -194,12 +204,44 @@ def hold_map(
         gap_resistance=pad.gap_resistance,
         problem=problem,
     )
-    near_end = np.array([_near_end(run, float(height), pad.width) for height in heights])
-    rims, solved = _rims(run, problem, pad, heights, float(np.median(pick_ups)), near_end, sections)
+    contact = _under_pads(columns, heights, np.where(near_end & ~solved, 0.5 * pad.width, 0.0))
     hottest = at_hottest(contact, rims)
     return Hold(
         run, pad, heights, pick_ups, judge(hottest), judge(contact), hottest, tuple(rims), solved, near_end
     )
+
+
+def _beside(run: Run, heights: Floats, width: float) -> list[Floats]:
+    """Heights of the columns beside the middles of pads on an uneven wall [m]."""
+    low, high = run.meridian.floor, run.meridian.height
+    return [np.clip(heights + share * width, low, high) for share in BESIDE]
+
+
+def _under_pads(columns: Contact, heights: Floats, reach: Floats) -> Contact:
+    """For each pad the hottest of the columns within its reach `[h]` [m]."""
+    chosen = np.empty((len(columns.pick_ups), len(heights)), dtype=int)
+    warmth = columns.thin[int(np.searchsorted(columns.time, JUDGED_AT)) - 1]
+    for index, (height, span) in enumerate(zip(heights, reach, strict=True)):
+        within = np.flatnonzero(np.abs(columns.heights - height) <= span + 1e-9)
+        chosen[:, index] = within[np.argmax(warmth[:, within], axis=1)]
+    return columns.chosen(chosen, heights)
+
+
+def fitting(run: Run, width: float) -> tuple[float, float]:
+    """Heights [m] between which a pad of a width [m] lies on the wall beside the drink."""
+    return run.meridian.floor + 0.5 * width, run.meridian.height - 0.5 * width
+
+
+def _check_fit(run: Run, heights: Floats, pad: Pad) -> None:
+    low, high = fitting(run, pad.width)
+    for height in heights:
+        if not low - 1e-9 <= height <= high + 1e-9:
+            raise InputError(
+                "height",
+                f"{1e3 * height:.4g} mm",
+                f"a pad of {1e3 * pad.width:.3g} mm there reaches beyond the wall beside the drink",
+                f'write a height from "{1e3 * low:.4g} mm" to "{1e3 * high:.4g} mm", or a narrower pad',
+            )
 
 
 def _rims(
@@ -210,12 +252,12 @@ def _rims(
     chosen = _chosen(kinds, most)
     found: dict[int, Rim] = {}
     for index in chosen:
-        place = float(np.clip(heights[index], run.meridian.floor + 0.5 * pad.width,
-                              run.meridian.height - 0.5 * pad.width))  # fmt: skip
+        place = float(heights[index])
         found[index] = rim_at(run, problem, pad.model_copy(update={"height": place, "pick_up": pick_up}))
     rims = []
     for index in range(len(heights)):
-        same = [each for each in found if kinds[each] == kinds[index]] or list(found)
+        same = [each for each in found if not near_end[each]] if index not in found else [index]
+        same = same or list(found)
         nearest = min(same, key=lambda each: abs(heights[each] - heights[index]))
         rims.append(found[nearest])
     return rims, np.isin(np.arange(len(heights)), chosen)
@@ -228,29 +270,26 @@ def _chosen(kinds: Sequence[tuple[tuple[str, ...], bool]], most: int) -> list[in
         places = [index for index, each in enumerate(kinds) if each == kind]
         chosen.append(places[len(places) // 2])
     rest = [index for index, kind in enumerate(kinds) if kind[1] and index not in chosen]
-    for index in rest:
-        if len(chosen) < most:
-            chosen.append(index)
-    return sorted(chosen)
+    left = max(0, most - len(chosen))
+    return sorted(chosen + rest[:: max(1, -(-len(rest) // max(1, left)))][:left])
 
 
 def _kind(run: Run, height: float) -> tuple[str, ...]:
     return tuple(layer.name for layer in run.meridian.layers if float(layer.thickness_at(height)) > 1e-9)
 
 
-def _near_end(run: Run, height: float, width: float) -> bool:
-    """Whether a pad at a height reaches an end of a layer within the wall."""
+def _near_end(run: Run, height: float, width: float, pick_ups: Floats) -> bool:
+    """Whether a pad at a height reaches an end of a layer within the wall, or the drink's level."""
     reach = 0.5 * width + END_MARGIN
     ends = [end for layer in run.meridian.layers for end in (*layer.reach, layer.low, layer.high)]
-    inner = [end for end in ends if 1e-6 < end < run.meridian.height - 1e-6]
-    return any(abs(end - height) < reach for end in inner)
+    ends = [end for end in ends if 1e-6 < end < run.meridian.height - 1e-6]
+    ends += [float(level) for level in np.interp(pick_ups, run.time, run.series.drink_level)]
+    return any(abs(end - height) < reach for end in ends)
 
 
-def default_heights(run: Run, count: int = HEIGHTS) -> Floats:
-    """Even heights over the wall beside the drink [m]."""
-    low, high = run.meridian.floor, run.meridian.height
-    margin = 0.03 * (high - low)
-    return np.linspace(low + margin, high - margin, count)
+def default_heights(run: Run, width: float, count: int = HEIGHTS) -> Floats:
+    """Even heights [m] at which a pad of a width [m] lies on the wall beside the drink."""
+    return np.linspace(*fitting(run, width), count)
 
 
 def default_pick_ups(duration: float) -> Floats:
@@ -269,18 +308,41 @@ def grip_band(run: Run) -> tuple[float, float]:
 
 
 def verdict(run: Run, coarse: Run | None = None) -> HoldFigures:
-    """The short verdict: the serving's own pads, or the worst of the grip band and of a few pick-ups.
+    """The short verdict: the serving's own pads; without them, or with a target, the grip band.
 
     `coarse` is a coarser run of the same, on which the section solve is done.
     """
-    if run.pads:
-        return _of_pads(run)
-    target, duration = run.serving.target, run.serving.duration
-    asked = 0.0 if target is None or target.hold_time is None else target.hold_time
+    target = run.serving.target
+    asked = None if target is None else target.hold_time
+    if not run.pads:
+        return _of_band(run, coarse, asked or 0.0)
+    return _of_pads(run) if asked is None else _worst(_of_pads(run), _of_band(run, coarse, asked))
+
+
+def _worst(one: HoldFigures, other: HoldFigures) -> HoldFigures:
+    """The figures of the shorter time, with the shorter of the others."""
+    first, second = sorted((one, other), key=lambda each: (each.thin, -each.at_least))
+    thick = min((first, second), key=lambda each: (each.thick, -each.thick_at_least))
+    injury = min((first, second), key=lambda each: (each.injury, -each.injury_at_least))
+    return replace(
+        first,
+        thick=thick.thick,
+        thick_at_least=thick.thick_at_least,
+        thick_decided=thick.thick_decided,
+        injury=injury.injury,
+        injury_at_least=injury.injury_at_least,
+        low=min(one.low, other.low),
+        high=max(one.high, other.high),
+    )
+
+
+def _of_band(run: Run, coarse: Run | None, asked: float) -> HoldFigures:
+    """The worst of the grip band and of a few pick-ups, from which a hold of `asked` [s] ends in time."""
+    duration = run.serving.duration
     last = max(min(duration - asked, 0.8 * duration), 0.5 * duration)
     pick_ups = np.array([time for time in VERDICT_PICK_UPS if time <= last])
     pick_ups = pick_ups if len(pick_ups) else np.array([0.5 * duration])
-    heights = np.linspace(*grip_band(run), VERDICT_HEIGHTS)
+    heights = np.clip(np.linspace(*grip_band(run), VERDICT_HEIGHTS), *fitting(run, DEFAULT_PAD.width))
     longest = max(LONGEST, 1.05 * asked)
     return hold_map(coarse or run, heights, pick_ups, longest=longest, sections=1).figures()
 
