@@ -160,10 +160,11 @@ def test_a_real_cup_with_units_in_the_headings_and_all_inputs(tmp_path):
     text = (tmp_path / "cup.toml").read_text().replace('"1.0 mm"', '"0.5 mm"')
     serving = cupfem.load_serving(tmp_path / "serving.toml")
     run = cupfem.pour(cupfem.Cup.from_text(text), serving, fineness=0.5, companion=False)
-    assert float(first["outer_past_40_degC_s"]) == pytest.approx(
-        run.figures()["outer_past_40_degC_s"], rel=1e-8
+    told = run.figures()
+    assert float(first["outer_past_40_degC_s"]) == pytest.approx(told["outer_past_40_degC_s"], rel=1e-8)
+    assert float(first["target_drink_above_margin_K"]) == pytest.approx(
+        told["drink_end_degC"] - 84.0, abs=1e-7
     )
-    assert float(first["target_1_margin"]) == pytest.approx(run.figures()["drink_end_degC"] - 84.0, abs=1e-7)
     assert third["outer_past_40_degC_s"] == "" or float(third["outer_past_40_degC_s"]) < 20.0
     assert {row["limits"] for row in (first, third)} <= {"passed", "failed"}
 
@@ -216,3 +217,35 @@ def test_a_worker_has_one_thread_of_linear_algebra():
     values = {"vary": [{"key": "x", "list": [1]}]}
     outcome = vary(Plan.from_data(values), model=model_of(vary_functions.threads), workers=1)
     assert outcome.rows[0].figures == {"threads": 1.0}
+
+
+def test_a_hold_time_and_its_margin(tmp_path):
+    """A cup of foam in a short serving is held to its end: only the least value of the hold time is known."""
+    import cupfem
+
+    folder = ROOT / "geometries"
+    (tmp_path / "serving.toml").write_text(
+        'duration = "30 s"\n[target]\nhold_time = "45 s"\nbetween = ["40 mm", "60 mm"]\n'
+    )
+    plan = Plan.from_data(
+        {
+            "cup": "cup.toml",
+            "serving": "serving.toml",
+            "fineness": 0.5,
+            "record": ["hold_time_s"],
+            "vary": [{"key": "cup", "list": ["cup.toml", "single.toml"]}],
+        }
+    )
+    (tmp_path / "cup.toml").write_text((folder / "foam.toml").read_text(encoding="utf-8"))
+    (tmp_path / "single.toml").write_text((folder / "single_board.toml").read_text(encoding="utf-8"))
+    outcome = vary(plan, folder=tmp_path, workers=1)
+    foam, board = outcome.rows
+    serving = cupfem.load_serving(tmp_path / "serving.toml")
+    for row, name in ((foam, "cup.toml"), (board, "single.toml")):
+        told = cupfem.pour(cupfem.load_cup(tmp_path / name), serving, fineness=0.5, companion=False).figures()
+        for key in row.figures.keys() & told.keys():
+            assert row.figures[key] == (told[key] and pytest.approx(told[key], rel=1e-8))
+    assert board.figures["target_hold_time_margin_s"] == pytest.approx(board.figures["hold_time_s"] - 45.0)
+    assert foam.figures["hold_time_s"] is None
+    assert outcome.verdicts() == ["passed", "failed"]
+    assert list(outcome.censored("hold_time_s")) == [True, False]

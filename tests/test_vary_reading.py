@@ -49,8 +49,8 @@ def ishigami():
 
 
 def test_ishigami_indices_are_the_published_ones(ishigami):
-    """Variances in closed form, V1 = (1 + b pi^4 / 5)^2 / 2, V2 = a^2 / 8, V13 = 8 b^2 pi^8 / 225 (Ishigami and
-    Homma 1990, from memory); scipy 1.17, documentation of sobol_indices, prints the indices 0.31, 0.44, 0.56."""
+    """Variances in closed form, V1 = (1 + b pi^4 / 5)^2 / 2, V2 = a^2 / 8, V13 = 8 b^2 pi^8 / 225 (Ishigami
+    and Homma 1990, from memory); scipy 1.17, documentation of sobol_indices, prints 0.31, 0.44, 0.56."""
     a, b = 7.0, 0.1
     v1, v2, v13 = 0.5 * (1 + b * math.pi**4 / 5) ** 2, a**2 / 8, 8 * b**2 * math.pi**8 / 225
     total = v1 + v2 + v13

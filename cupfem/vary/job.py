@@ -17,7 +17,7 @@ from cupfem.vary.outcome import Goal, Outcome, Row, goal_of, varied_of
 from cupfem.vary.paths import Slot
 from cupfem.vary.plan import Plan, load_plan
 from cupfem.vary.pools import ClusterPool, LocalPool, Pool
-from cupfem.vary.recorded import check_recorded, pour_case
+from cupfem.vary.recorded import check_recorded, pour_case, target_keys
 from cupfem.vary.store import Result, Store
 from cupfem.vary.values import Setting
 
@@ -133,15 +133,9 @@ def goals_of(plan: Plan, model: Model) -> tuple[Goal, ...]:
     """The limits of a plan; without any, the target of its serving."""
     if plan.limits:
         return tuple(goal_of(key, limit) for key, limit in plan.limits.items())
-    target = Serving.from_data(model.serving).target if isinstance(model, CupModel) else None
-    if target is None:
+    if not isinstance(model, CupModel):
         return ()
-    lines = sum(getattr(target, key, None) is not None for key in TARGET_LINES)
-    return tuple(Goal(f"target_{number}_margin", at_least=0.0) for number in range(1, lines + 1))
-
-
-TARGET_LINES = ("hold_time", "drink_above", "wall_below")
-"""Keys of a [target] that each ask for something."""
+    return tuple(Goal(key, at_least=0.0) for key in target_keys(Serving.from_data(model.serving)))
 
 
 def outcome_of(

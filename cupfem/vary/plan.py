@@ -18,7 +18,7 @@ COUNTED: tuple[str, ...] = ("grid", "zip")
 """Designs that take the listed values, of a range as many as it counts."""
 SAMPLED: tuple[str, ...] = ("latin hypercube", "sobol", "random", "sobol indices")
 """Designs that draw `samples` points."""
-DEFAULT_RECORD = ("board_mass_g", "drink_end_degC", "outer_max_degC")
+DEFAULT_RECORD = ("board_mass_g", "drink_end_degC", "outer_max_degC", "hold_time_s")
 
 
 def _scalar(value: Any) -> Any:

@@ -15,6 +15,10 @@ from cupfem.run.headline import verdicts
 from cupfem.serving import Serving
 from cupfem.vary.cases import CupJob, Figures
 
+TARGET = {"drink_above": "K", "wall_below": "K", "hold_time": "s"}
+"""Key of a [target] that asks for something -> unit of its margin, in the order of the verdicts."""
+TOUCHED = ("hold_", "injury_")
+"""How figures begin that only a run with a finger has, which takes about twice as long."""
 DIGITS = 9
 """Significant digits that are kept. What differs between linear-algebra libraries lies in later ones."""
 PROBE = 0.5
@@ -34,6 +38,12 @@ def pour_case(job: CupJob) -> Figures:
     return kept | {key: _rounded(value) for key, value in told.items() if key.startswith("target_")}
 
 
+def target_keys(serving: Serving) -> list[str]:
+    """Keys of the margins of a serving's target."""
+    asked = [key for key in TARGET if getattr(serving.target, key, None) is not None]
+    return [f"target_{key}_margin_{TARGET[key]}" for key in asked]
+
+
 def check_recorded(job: CupJob) -> None:
     """InputError for a key that a run has no figure of, told from a coarse run."""
     told = _told(job, PROBE * job.fineness)
@@ -49,7 +59,8 @@ def at_least_key(key: str) -> str:
 
 def _told(job: CupJob, fineness: float) -> dict[str, float | None]:
     cup, serving = Cup.from_data(job.cup), Serving.from_data(job.serving)
-    run = pour(cup, serving, fineness=fineness, companion=False)
+    touched = any(key.startswith(TOUCHED) for key in job.recorded)
+    run = pour(cup, serving, fineness=fineness, companion=False, hold=touched or None)
     told = dict(run.figures())
     for key, value in list(told.items()):
         if value is None and key.endswith("_s"):
@@ -60,9 +71,17 @@ def _told(job: CupJob, fineness: float) -> dict[str, float | None]:
     told["board_mass_g"] = 1e3 * math.fsum(board)
     costs = [None if m.cost_per_kg is None else mass * m.cost_per_kg.value for m, mass in masses.items()]
     told["cost"] = None if None in costs else math.fsum(cost for cost in costs if cost is not None)
-    for number, verdict in enumerate(verdicts(run), 1):
-        told[f"target_{number}_margin"] = verdict.margin
-    return told
+    return told | _margins(run, told)
+
+
+def _margins(run: Run, told: dict[str, float | None]) -> dict[str, float | None]:
+    """How far the target is kept; for a hold time that was not reached only how far at least."""
+    margins: dict[str, float | None] = {}
+    for key, verdict in zip(target_keys(run.serving), verdicts(run), strict=True):
+        margins[key] = verdict.margin
+        if verdict.dimension == "time" and told["hold_time_s"] is None:
+            margins |= {key: None, at_least_key(key): verdict.margin}
+    return margins
 
 
 def _masses(run: Run) -> dict[Material, float]:
