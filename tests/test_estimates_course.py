@@ -16,6 +16,7 @@ from cupfem.estimates import (
     follow,
     station,
     steady,
+    surface_loss,
     transient,
     volume_at,
     wetted_area,
@@ -215,3 +216,45 @@ def test_the_room_steps_outside():
     found = follow(Cup.from_text(CUP), Serving.from_text(stepped), 0.02, drink=70.0)
     before, after = found.outside([299.0, 420.0])
     assert before - after > 2.0
+
+
+REFILLED = """
+duration = "4 min"
+[drink]
+density = "1000 kg/m^3"
+specific_heat = "4000 J/(kg K)"
+temperature = "80 degC"
+level = "40 mm"
+[[event]]
+refill = "100 ml"
+at = "2 min"
+temperature = "95 degC"
+"""
+
+
+def test_a_refill_mixes_and_wets_the_wall_higher():
+    """Mixed by volume, both of one liquid; a station above the old level is dry before and wet after."""
+    cup, serving = Cup.from_text(THIN), Serving.from_text(REFILLED)
+    found, volume = drink_course(cup, serving), SECTION * 0.03
+    before, after = found([119.999, 120.0])
+    assert after == pytest.approx((volume * before + 1e-4 * 95.0) / (volume + 1e-4), abs=1e-3)
+    outside = follow(cup, serving, 0.05).outside([110.0, 130.0])
+    assert outside[0] < 40.0 < 60.0 < outside[1]
+
+
+def test_a_lid_keeps_the_heat_of_the_surface_and_the_dry_wall_warm():
+    cup, open_cup = Cup.from_text(CUP), Serving()
+    lidded = Serving.from_text("[lid]")
+    assert surface_loss(open_cup)(0.04, 80.0) > 1.0
+    assert surface_loss(lidded)(0.04, 80.0) == 0.0
+    assert drink_course(cup, lidded)(600.0) > drink_course(cup, open_cup)(600.0) + 5.0
+    dry = [steady(station(cup, serving, 0.095)).temperature[-1] for serving in (open_cup, lidded)]
+    assert dry[0] == pytest.approx(22.0, abs=1e-6)
+    assert dry[1] > 35.0
+
+
+def test_a_carrier_takes_the_place_of_the_outside_films():
+    carried = Serving.from_text('[carrier]\nheight = "40 mm"\ncoefficient = "25 W/(m^2 K)"')
+    below, above = (station(Cup.from_text(CUP), carried, height) for height in (0.03, 0.05))
+    assert below.outer == Face({"carrier": FixedFilm(25.0)}, 22.0)
+    assert "outside radiation" in above.outer.films

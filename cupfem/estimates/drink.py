@@ -1,8 +1,9 @@
 """The drink of an estimate: one lumped node whose volume falls as it is drunk.
 
 Balance of the temperature, m c dT/dt = A q - loss, with q the heat flux that the wall passes to the drink and
-the loss that of the open surface: vapour with its latent heat, convection, radiation. What evaporates is left
-out of the mass, and what is drunk leaves at the drink's own temperature, so it is in m alone. A well-mixed
+the loss that of the open surface: vapour with its latent heat, convection, radiation; a lid is taken as tight
+and insulating. What evaporates is left out of the mass, and what is drunk leaves at the drink's own
+temperature, so it is in m alone. The pour and refills are taken as sudden. A well-mixed
 node is common practice (Incropera, DeWitt, Bergman, Lavine, Fundamentals of Heat and Mass Transfer, 6th ed.
 2007, sec. 5.1).
 """
@@ -18,7 +19,7 @@ import numpy as np
 from cupfem import edges
 from cupfem.cup import Cup
 from cupfem.fluids import Liquid, vapour_pressure, water_latent_heat
-from cupfem.serving import PRESSURE, Serving, fill_volume
+from cupfem.serving import Serving, fill_volume
 
 SMALLEST_VOLUME = 1e-6
 """A drink is never less than this [m3]; a rest of a millilitre follows the wall at once."""
@@ -65,13 +66,14 @@ def lumped_drink(cup: Cup, serving: Serving, begin: float = 0.0) -> LumpedDrink:
 
 
 def volume_at(cup: Cup, serving: Serving, time: float) -> float:
-    """Volume of drink [m3] at a time [s], after a sip at that time."""
+    """Volume of drink [m3] at a time [s], after a sip or a refill at that time."""
     return _volume_from(cup, serving, time)(time)
 
 
 def _volume_from(cup: Cup, serving: Serving, begin: float) -> Callable[[float], float]:
-    """Volume of drink [m3] as a function of the time [s]; of the sips those up to `begin` count."""
+    """Volume of drink [m3] as a function of the time [s]; of sips and refills those up to `begin` count."""
     start = fill_volume(cup, serving) - sum(volume for taken, volume in serving.sips() if taken <= begin)
+    start += sum(volume for poured, volume, _ in serving.refills() if poured <= begin)
     flows = serving.steady_drinking()
 
     def volume(time: float) -> float:
@@ -94,8 +96,11 @@ def wetted_area(cup: Cup, level: float) -> float:
 def surface_loss(serving: Serving, time: float = 0.0) -> Callable[[float, float], float]:
     """Heat that leaves the drink's surface [W]: vapour, convection, radiation.
 
-    A function of the surface's radius [m] and the drink's temperature [degC], in the room of a time [s].
+    A function of the surface's radius [m] and the drink's temperature [degC], in the room of a time [s];
+    nothing leaves while the lid is on.
     """
+    if serving.lid_at(time):
+        return lambda radius, temperature: 0.0
     room = float(serving.room.temperature_at(time))
     given = edges.surroundings_of(serving, "surface")
     around = room if given is None else given
@@ -118,7 +123,7 @@ def _vapour_and_convection(serving: Serving, room: float) -> Callable[[float, fl
     activity = serving.drink.liquid.vapour_factor
 
     def flux(radius: float, temperature: float) -> float:
-        air = (temperature, room, vapour, PRESSURE, 2.0 * radius, activity)
+        air = (temperature, room, vapour, serving.room.pressure, 2.0 * radius, activity)
         latent = float(closure.mass_flux(*air)) * float(water_latent_heat(temperature))
         return latent + float(closure.heat_transfer_coefficient(*air)) * (temperature - room)
 

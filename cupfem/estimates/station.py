@@ -92,8 +92,8 @@ class Station:
 
     @property
     def wetted(self) -> bool:
-        """Whether the inner face leads to the drink."""
-        return bool(self.inner.films) and self.inner.surroundings is None
+        """Whether the inner face touches the drink."""
+        return edges.TO_DRINK in self.inner.films
 
     @property
     def thickness(self) -> float:
@@ -119,24 +119,26 @@ def station(
     """The station at a height [m], with the films of a level [m] and the room of a time [s].
 
     Level left out: that of the pour. A layer is there between its ends and not beyond, a ridge over its foot
-    with its full height: blends and flanks are left out. Below the floor the inside is insulated. Raises
-    InputError for a height that is not on the wall.
+    with its full height: blends and flanks are left out. Below the floor the inside is insulated. Under a
+    lid the dry wall meets still air at the temperature of the drink; what condenses there is left out.
+    Raises InputError for a height that is not on the wall.
     """
     if not 0.0 <= height <= cup.height:
         why = f"not on the wall, from 0 mm to {_mm(cup.height)}"
         raise InputError("station", _mm(height), why, f'write for example "{_mm(0.5 * cup.height)}"')
-    layers = _stack(cup, height)
+    layers = _stack(cup, height, serving.room.pressure)
     radii = [cup.inner_radius(height) / math.cos(float(cup.profile.angle_at(height)))]
     for layer in layers:
         radii.append(radii[-1] + layer.thickness)
     level = cup.level(fill_volume(cup, serving)) if level is None else level
     room = float(serving.room.temperature_at(time))
-    inner, outer = _inner_face(cup, serving, height, level, room), _outer_face(cup, serving, height, room)
+    inner = _inner_face(cup, serving, height, level, time)
+    outer = _outer_face(cup, serving, height, room)
     temperatures = serving.start_temperature, serving.drink.temperature
     return Station(height, tuple(radii), tuple(layers), inner, outer, *temperatures)
 
 
-def _stack(cup: Cup, height: float) -> list[WallLayer]:
+def _stack(cup: Cup, height: float, pressure: float) -> list[WallLayer]:
     """Layers at a height, with the contacts of loose layers and of layers that have stopped."""
     present = [cup.layer.index(layer) for layer in cup.stack(height)]
     found = []
@@ -144,7 +146,7 @@ def _stack(cup: Cup, height: float) -> list[WallLayer]:
         if index in present:
             if layer.fit is not None:
                 found.append(_contact(f"{layer.name} fit", _fit_conductance(cup, layer, height)))
-            found.append(_layer(cup, index, height))
+            found.append(_layer(cup, index, height, pressure))
         elif layer.contact is not None and min(present) < index < max(present):
             found.append(_contact(f"{layer.name} contact", layer.contact))
     return found
@@ -173,29 +175,33 @@ def _fit_conductance(cup: Cup, layer: Layer, height: float) -> float:
     return air / (gap + air / (touching - radiation)) + radiation
 
 
-def _layer(cup: Cup, index: int, height: float) -> WallLayer:
+def _layer(cup: Cup, index: int, height: float, pressure: float) -> WallLayer:
     layer = cup.layer[index]
     material, thickness = cup.material(layer.material), layer.thickness_at(height)
     if material.kind == "solid":
         capacity = material.density.value * material.specific_heat.value
         return WallLayer(layer.name, thickness, material.conductivity_through.value, capacity)
-    gap = edges.gap_of(cup, index, height)
+    gap = edges.gap_of(cup, index, height, pressure)
     capacity = float(air_density(GAS_TEMPERATURE, gap.pressure)) * float(air_specific_heat(GAS_TEMPERATURE))
     conductivity = float(air_conductivity(GAS_TEMPERATURE))
     return WallLayer(layer.name, thickness, conductivity, capacity, gap, edges.gap_height(cup, index))
 
 
-def _inner_face(cup: Cup, serving: Serving, height: float, level: float, room: float) -> Face:
+def _inner_face(cup: Cup, serving: Serving, height: float, level: float, time: float) -> Face:
     if height < cup.floor:
         return Face()
     if height <= level:
-        return Face(edges.wetted_films(cup, serving, level))
+        return Face(edges.wetted_films(cup, serving, level, serving.stirred_at(time)))
     emissivity = cup.emissivity(cup.stack(height)[0], "inner")
     films = edges.dry_films(cup, serving, level, emissivity)
-    return Face(films, _led_to(serving, "dry", room))
+    if serving.lid_at(time):
+        return Face({name: film for name, film in films.items() if name != "dry wall radiation"})
+    return Face(films, _led_to(serving, "dry", float(serving.room.temperature_at(time))))
 
 
 def _outer_face(cup: Cup, serving: Serving, height: float, room: float) -> Face:
+    if serving.carrier is not None and height <= serving.carrier.height:
+        return Face(edges.carrier_films(serving), room)
     emissivity = cup.emissivity(cup.stack(height)[-1], "outer")
     films = edges.outside_films(cup, serving, emissivity)
     return Face(films, _led_to(serving, "outside", room))
