@@ -28,7 +28,7 @@ sys.path.insert(0, str(ROOT / "tests" / "hard_use"))
 from kill_runs import FILES, flaws  # noqa: E402
 
 CUP = ROOT / "geometries" / "double_wall.toml"
-UNIT = re.compile(r"_(degC|K|s|mm|ml|J|kJ|W|g|relative|kg_m2)$")
+UNIT = re.compile(r"_(degC|K|s|mm|ml|J|kJ|W|g|relative|W_m2_K)$")
 TARGET = {"drink_above": "84 degC", "until": "20 s"}
 
 
@@ -117,7 +117,6 @@ def test_verdict_and_cautions(folder):
     assert verdict["margin_K"] == pytest.approx(verdict["reached_degC"] - 84.0, abs=1e-6)
     assert verdict["passed"] == (verdict["margin_K"] >= 0.0)
     assert "not a safety certificate" in summary["caution"]
-    assert summary["note"] == "free-wall figures, not a hold time"
     assert any("board moisture not modelled" in line for line in summary["uncertainty"]["model"])
     assert summary["uncertainty"]["numerical"]["time_K"] > 0.0
 
@@ -140,7 +139,7 @@ def test_keys_are_sorted(folder):
 
 
 def test_pads_in_the_summary(tmp_path):
-    """Hold times stand by pad, and the earliest of all at the top; the other pad lets go before it hurts."""
+    """Hold times stand by pad; the second pad lets go before it hurts."""
     pads = [
         {"height": "50 mm", "width": "6 mm", "pick_up": "10 s"},
         {"height": "70 mm", "width": "6 mm", "pick_up": "20 s", "release": "20.5 s"},
@@ -155,9 +154,25 @@ def test_pads_in_the_summary(tmp_path):
     assert (first["height_mm"], first["pick_up_s"]) == (50.0, 10.0)
     assert second["hold_time_s"] is None
     assert second["hold_time_at_least_s"] == 0.5
-    assert summary["hold_time_s"] == first["hold_time_s"]
-    assert "hold_time_at_least_s" not in summary
     assert [key for key in numbers(summary) if not UNIT.search(key)] == []
+
+
+def test_hold_time_in_the_summary(tmp_path):
+    """Judged: the target in seconds, the figures of touch and what decided them. Not judged: the note."""
+    cup = cupfem.load_cup(CUP)
+    serving = cupfem.Serving(duration="60 s", target=cupfem.Target(hold_time="2 min"))
+    judged = cupfem.pour(cup, serving, fineness=0.25, companion=False, hold=True)
+    summary = told(write_run(judged, tmp_path / "judged"))
+    (verdict,) = summary["verdicts"]
+    assert (verdict["limit_s"], verdict["passed"]) == (120.0, False)
+    assert verdict["margin_s"] == pytest.approx(verdict["reached_s"] - 120.0, abs=1e-6)
+    for name, value in judged.touch.figures().items():
+        assert summary[name] == (value if value is None else pytest.approx(value, rel=1e-8))
+    assert summary["hold"]["decided_by"] == judged.touch.thin_decided
+    assert "note" not in summary
+    assert [key for key in numbers(summary) if not UNIT.search(key)] == []
+    free = cupfem.pour(cup, cupfem.Serving(duration="10 s"), fineness=0.25, companion=False, hold=False)
+    assert told(write_run(free, tmp_path / "free"))["note"] == "free-wall figures, not a hold time"
 
 
 def test_what_is_no_number_is_null(run):

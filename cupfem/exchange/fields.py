@@ -103,7 +103,7 @@ def _moments(section: Fields) -> Iterator[tuple[float, str]]:
     for time, temperature in zip(section.times, section.temperatures, strict=True):
         changing = Arrays(
             points={"temperature_degC": temperature},
-            cells={"heat_flux_W_m2": _with_third(flux.at(temperature))},
+            cells={"heat_flux_W_m2": with_third(flux.at(temperature))},
             whole={"TimeValue": np.array([time])},
         )
         yield float(time), template.text(changing)
@@ -114,7 +114,7 @@ def section_grid(mesh: SectionMesh) -> Grid:
     kind, cells = KINDS[len(mesh.element_dofs)], mesh.element_dofs.T.copy()
     clockwise = signed_areas(mesh) < 0.0
     cells[clockwise] = cells[clockwise][:, _TURNED[kind]]
-    return Grid(_with_third(mesh.points), ((kind, cells),))
+    return Grid(with_third(mesh.points), ((kind, cells),))
 
 
 def signed_areas(mesh: SectionMesh) -> Floats:
@@ -137,6 +137,6 @@ def marks_and_names(section: Fields) -> tuple[dict[str, NDArray[np.generic]], di
     return marks, {"region_names": list(mesh.regions), "material_names": materials}
 
 
-def _with_third(vectors: Floats) -> Floats:
+def with_third(vectors: Floats) -> Floats:
     """`[2, n]` to `[n, 3]` with a third component of zero."""
     return np.column_stack([*vectors, np.zeros(vectors.shape[1])])

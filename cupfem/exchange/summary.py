@@ -6,7 +6,7 @@ import csv
 import io
 import json
 import math
-from collections.abc import Mapping, Sequence
+from collections.abc import Mapping
 from typing import Any
 
 import numpy as np
@@ -14,6 +14,7 @@ from numpy.typing import NDArray
 
 from cupfem.run import CAUTION, FREE_WALL, PadField, Run
 from cupfem.run.headline import Verdict, uncertainty_lines, verdicts
+from cupfem.run.touched import HoldFigures
 from cupfem.touch.felt import pad_verdict
 
 Floats = NDArray[np.float64]
@@ -34,11 +35,10 @@ def summary_json(run: Run) -> str:
 
 def summary(run: Run) -> dict[str, Any]:
     """What `summary.json` holds; None for a time that was not reached, beside `..._at_least_s`."""
-    pads = [_pad(run, field) for field in run.pads]
     return {
-        **_worst(pads),
         **_bounded(run.figures(), run.serving.duration),
-        "pads": pads,
+        "hold": {} if run.touch is None else _hold(run.touch),
+        "pads": [_pad(run, field) for field in run.pads],
         "title": {"cup": run.cup.title, "serving": run.serving.title},
         "verdicts": [_verdict(verdict) for verdict in verdicts(run)],
         "uncertainty": {"numerical": _numerical(run), "model": _model(run)},
@@ -46,7 +46,7 @@ def summary(run: Run) -> dict[str, Any]:
         "defaults": list(run.defaults),
         "ranges": list(run.ranges),
         "caution": CAUTION,
-        "note": FREE_WALL,
+        **({"note": FREE_WALL} if run.touch is None else {}),
     }
 
 
@@ -77,7 +77,7 @@ def _bounded(told: Mapping[str, Any], at_least: float) -> dict[str, Any]:
     bounds = {
         f"{key.removesuffix('_s')}_at_least_s": at_least
         for key, value in told.items()
-        if key.endswith("_s") and (value is None or value == math.inf)
+        if key.endswith("_s") and not key.endswith("_at_least_s") and (value is None or value == math.inf)
     }
     return bounds | dict(told)
 
@@ -101,25 +101,27 @@ def _pad(run: Run, field: PadField) -> dict[str, Any]:
     }
 
 
-def _worst(pads: Sequence[Mapping[str, Any]]) -> dict[str, Any]:
-    """The earliest hold times of all pads; nothing without pads."""
-    if not pads:
-        return {}
-    names = ("hold_time_s", "hold_time_thick_skin_s", "injury_time_s")
-    bounds = [f"{name.removesuffix('_s')}_at_least_s" for name in names]
-    worst = {name: min(pad[name] for pad in pads) for name in names}
-    least = {bound: min(pad.get(bound, math.inf) for pad in pads) for bound in bounds}
-    kept = {bound: least[bound] for name, bound in zip(names, bounds, strict=True) if worst[name] == math.inf}
-    return worst | kept
+def _hold(touch: HoldFigures) -> dict[str, Any]:
+    """Where and by what the hold times among the headline figures were decided."""
+    return {
+        "between_mm": [1e3 * touch.low, 1e3 * touch.high],
+        "decided_by": touch.thin_decided,
+        "decided_by_thick_skin": touch.thick_decided,
+        "layer": touch.layer,
+        "place": touch.place,
+        "skin": touch.skin,
+        "contact_W_m2_K": touch.conductance,
+    }
 
 
 def _verdict(verdict: Verdict) -> dict[str, Any]:
+    value, difference = ("s", "s") if verdict.dimension == "time" else ("degC", "K")
     return {
         "asked": verdict.asked,
         "passed": verdict.passed,
-        "limit_degC": verdict.limit,
-        "reached_degC": verdict.reached,
-        "margin_K": verdict.margin,
+        f"limit_{value}": verdict.limit,
+        f"reached_{value}": verdict.reached,
+        f"margin_{difference}": verdict.margin,
     }
 
 
