@@ -26,6 +26,7 @@ from cupfem.films import (
     FilmSum,
     FixedFilm,
     ForcedConvection,
+    HeadspaceConvection,
     Hole,
     HorizontalPlate,
     MixedConvection,
@@ -120,7 +121,8 @@ def dry_films(cup: Cup, serving: Serving, level: float, emissivity: float | None
         emissivity = cup.emissivity(cup.stack(cup.height)[0], "inner")
     below, mouth = cup.inner_radius(cup.height - dry), cup.inner_radius(cup.height)
     share = emissivity * wall_to_mouth(below, mouth, dry)
-    plate = _dry_plate(cup, serving, dry)
+    length = _along(cup, cup.height - dry, cup.height)
+    plate = NaturalConvectionPlate(length, lean=cup.half_taper_angle, pressure=serving.room.pressure)
     return {"dry wall convection": plate, "dry wall radiation": Radiation(share)}
 
 
@@ -149,11 +151,16 @@ def lidded_films(cup: Cup, serving: Serving, inside: UnderLid, emissivity: float
     below, mouth = cup.inner_radius(cup.height - dry), cup.inner_radius(cup.height)
     wall = (below + mouth) * math.hypot(dry, mouth - below)
     to_drink = (1.0 - disk_to_disk(below, mouth, dry)) * below * below / wall if inside.present else 0.0
-    plate = _dry_plate(cup, serving, dry)
+    gas = HeadspaceConvection(
+        _along(cup, cup.height - dry, cup.height),
+        inside.vapour_pressure,
+        serving.room.pressure,
+        lean=cup.half_taper_angle,
+    )
     drink = inside.temperature if inside.present else 0.0
     return {
-        DRY_TO_HEADSPACE: plate,
-        CONDENSATE: Condensation(plate, inside.vapour_pressure, serving.room.pressure),
+        DRY_TO_HEADSPACE: gas,
+        CONDENSATE: Condensation(gas),
         DRY_TO_DRINK: RadiationTo(emissivity * WATER_EMISSIVITY * to_drink, drink),
         DRY_TO_LID: RadiationTo(
             emissivity * lid_emissivity(cup, serving) * wall_to_mouth(below, mouth, dry), inside.lid
@@ -361,11 +368,6 @@ def _drink_films(
         return {TO_DRINK: FixedFilm(entry.coefficient)}
     still = DrinkConvection(serving.drink.liquid, length, place, lean)
     return {TO_DRINK: Stirred(still, serving.drink.stirred_coefficient) if stirred else still}
-
-
-def _dry_plate(cup: Cup, serving: Serving, dry: float) -> NaturalConvectionPlate:
-    length = _along(cup, cup.height - dry, cup.height)
-    return NaturalConvectionPlate(length, lean=cup.half_taper_angle, pressure=serving.room.pressure)
 
 
 def _along(cup: Cup, low: float, high: float) -> float:

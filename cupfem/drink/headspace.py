@@ -25,7 +25,15 @@ from numpy.typing import NDArray
 from cupfem.drink.lumped import Ambient, Lumped
 from cupfem.drink.surface import surface_state
 from cupfem.edges import CONDENSATE, DRY_TO_DRINK, DRY_TO_HEADSPACE, DRY_TO_LID, disk_to_disk
-from cupfem.films import STEFAN_BOLTZMANN, Film, Hole, HorizontalPlate, SurfaceClosure, condensed, disk_length
+from cupfem.films import (
+    STEFAN_BOLTZMANN,
+    Film,
+    HeadspaceConvection,
+    Hole,
+    SurfaceClosure,
+    condensed,
+    disk_length,
+)
 from cupfem.films.base import Values, fourth_power_difference
 from cupfem.fluids import (
     GAS_CONSTANT_VAPOUR,
@@ -46,6 +54,12 @@ FLOOR = 1e-12
 nothing else sets."""
 SCALES = (1.0, 100.0, 1.0)
 """Changes of the three unknowns that weigh as one kelvin; 100 Pa is about what a kelvin is at 15 degC."""
+
+
+COLDEST, HOTTEST = -60.0, 150.0
+"""What gas and lid may be in an iteration on its way [degC]."""
+DENSEST = 0.97
+"""Share of the pressure that the vapour's may be in an iteration on its way."""
 
 
 @dataclass(frozen=True, eq=False)
@@ -94,9 +108,12 @@ class Headspace:
         enthalpy: Values = self.liquid.enthalpy(temperature) + water_latent_heat(temperature)
         return enthalpy
 
-    def inside_of_lid(self, unknowns: Floats, ambient: Ambient) -> float:
-        """Temperature of the lid's inner face [degC]."""
-        return self.lid.inside(float(unknowns[2]), ambient.temperature)
+    def above(self, unknowns: Floats, ambient: Ambient) -> tuple[float, float, float]:
+        """Temperature [degC] and vapour pressure [Pa] of the gas, temperature of the lid's inner face."""
+        face = within(float(unknowns[2]), COLDEST, HOTTEST)
+        gas = within(float(unknowns[0]), COLDEST, HOTTEST)
+        vapour = within(float(unknowns[1]), 0.0, DENSEST * ambient.pressure)
+        return gas, vapour, within(self.lid.inside(face, ambient.temperature), COLDEST, HOTTEST)
 
     def absent(self, unknowns: Floats, ambient: Ambient) -> Floats:
         """Balances without a lid: the unknowns are the room's."""
@@ -126,7 +143,8 @@ class Headspace:
         if not drink.present:
             out[3] -= LATENT * FLOOR * (drink.vapour_pressure - drink.ambient.vapour_pressure)
         room = drink.ambient.temperature
-        outside = {n: self.lid.area * q for n, q in self.lid.leaving(float(unknowns[2]), room, time).items()}
+        face = within(float(unknowns[2]), COLDEST, HOTTEST)
+        outside = {name: self.lid.area * q for name, q in self.lid.leaving(face, room, time).items()}
         out[4] -= sum(outside.values())
         return out, terms | outside
 
@@ -144,7 +162,8 @@ class Headspace:
     def _lid(self, out: Floats, drink: Lumped) -> None:
         pressure, gas, face = drink.ambient.pressure, drink.headspace, drink.lid
         length = disk_length(2.0 * math.sqrt(self.lid.area / math.pi))
-        coefficient = float(HorizontalPlate(length, "down", pressure=pressure).coefficient(face, gas))
+        plate = HeadspaceConvection(length, drink.vapour_pressure, pressure, "lid")
+        coefficient = float(plate.coefficient(face, gas))
         heat = self.lid.area * coefficient * (gas - face)
         mass = self.lid.area * float(condensed(coefficient, face, gas, drink.vapour_pressure, pressure))
         returned = mass if drink.present else 0.0
@@ -172,6 +191,6 @@ def _vapour_density(temperature: float, vapour_pressure: float) -> float:
     return vapour_pressure / (GAS_CONSTANT_VAPOUR * (temperature + ZERO_CELSIUS))
 
 
-def bounded(vapour_pressure: float, pressure: float) -> float:
-    """A vapour pressure that an iteration may try: from zero to nearly the pressure of the air [Pa]."""
-    return min(max(vapour_pressure, 0.0), 0.97 * pressure)
+def within(value: float, low: float, high: float) -> float:
+    """A value that an iteration may try."""
+    return min(max(value, low), high)

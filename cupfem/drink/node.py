@@ -19,7 +19,7 @@ from typing import Any
 import numpy as np
 from numpy.typing import NDArray
 
-from cupfem.drink.headspace import SCALES, Headspace, bounded
+from cupfem.drink.headspace import SCALES, Headspace
 from cupfem.drink.lumped import Ambient, Lumped
 from cupfem.drink.surface import Surface
 from cupfem.errors import InputError
@@ -91,11 +91,8 @@ class Drink:
     def _above(self, state: Floats, ambient: Ambient) -> dict[str, Any]:
         if self.headspace is None or not ambient.lidded:
             return {}
-        return {
-            "headspace": float(state[2]),
-            "vapour_pressure": bounded(float(state[3]), ambient.pressure),
-            "lid": self.headspace.inside_of_lid(state[2:], ambient),
-        }
+        found = self.headspace.above(state[2:], ambient)
+        return dict(zip(("headspace", "vapour_pressure", "lid"), found, strict=True))
 
     def rates(
         self, state: Floats, drink: Lumped, time: float, received: Floats

@@ -30,7 +30,7 @@ from cupfem.films.evaporation import (
     Shah,
     closure,
 )
-from cupfem.films.headspace import Condensation, Hole, RadiationTo, condensed
+from cupfem.films.headspace import Condensation, HeadspaceConvection, Hole, RadiationTo, condensed
 from cupfem.films.outside import (
     Convection,
     ForcedConvection,
@@ -75,6 +75,7 @@ __all__ = [
     "FixedFilm",
     "FluxFunction",
     "ForcedConvection",
+    "HeadspaceConvection",
     "Hole",
     "HorizontalPlate",
     "MixedConvection",

@@ -4,12 +4,20 @@ from __future__ import annotations
 
 import math
 from dataclasses import dataclass
-from typing import ClassVar
+from typing import ClassVar, Literal
 
 import numpy as np
 
-from cupfem.films.base import GRAVITY, STEFAN_BOLTZMANN, Values, fourth_power_difference
-from cupfem.films.outside import NaturalConvectionPlate, air_film
+from cupfem.films import correlations as nu
+from cupfem.films.base import (
+    GRAVITY,
+    STEFAN_BOLTZMANN,
+    Values,
+    fourth_power_difference,
+    rounded_difference,
+    upward_share,
+)
+from cupfem.films.outside import Convection, air_film
 from cupfem.fluids import (
     GAS_CONSTANT_VAPOUR,
     air_conductivity,
@@ -20,7 +28,8 @@ from cupfem.fluids import (
 )
 from cupfem.quantities import ZERO_CELSIUS
 
-ONSET_WIDTH = 20.0  # Pa, about 0.15 K at 22 degC; rounds the onset of condensation
+ONSET_WIDTH = 100.0  # Pa, about 0.6 K at 22 degC and 0.1 K at 70; rounds the onset of condensation
+HEAVINESS_WIDTH = 1e-3  # relative density difference of 0.3 K; rounds the coefficients at zero
 HOLE_WIDTH = 1e-3  # relative density difference; makes the exchange through a hole linear at zero drive
 HOLE_FROUDE = 0.055
 
@@ -57,24 +66,69 @@ def condensed(
     return velocity * drive / (GAS_CONSTANT_VAPOUR * (film + ZERO_CELSIUS))
 
 
+def heaviness(wall: Values, gas: Values, vapour_pressure: Values, pressure: float) -> Values:
+    """Relative density difference between the gas at a wall and away from it, positive where it is heavier.
+
+    The wall's gas is at the wall's temperature and gives up what condenses. So the gas keeps moving where
+    wall and gas are equally warm and vapour condenses.
+    """
+    dried = vapour_pressure - positive_part(vapour_pressure - water_saturation_pressure(wall), ONSET_WIDTH)
+    at_wall = moist_air_density(wall, dried, pressure)
+    away = moist_air_density(gas, vapour_pressure, pressure)
+    return 2.0 * (at_wall - away) / (at_wall + away)
+
+
+@dataclass(frozen=True)
+class HeadspaceConvection(Convection):
+    """Natural convection between a headspace and what bounds it, buoyancy from the moist densities.
+
+    Formula: wall: `nusselt_vertical_plate`, g replaced by g cos(lean); lid, facing down:
+    `nusselt_horizontal_plate`, unstable where the gas at the lid is the heavier; Ra with `heaviness`, rounded
+    at zero.
+    Parameters: length [m], the dry height along the wall, or the lid's area over perimeter; vapour_pressure
+    of the gas and pressure [Pa]; place; lean [rad].
+    Returns: heat flux leaving the surface [W/m2]; surroundings is the gas.
+    Range: that of the plates; a headspace is a small cavity in which wall, lid and drink share one flow.
+    Example: none in a textbook; dry gas gives the plates' own values.
+    Reference: those of the two correlations; density difference as in Bower and Saylor 2009.
+    """
+
+    length: float
+    vapour_pressure: float
+    pressure: float
+    place: Literal["wall", "lid"] = "wall"
+    lean: float = 0.0
+    label: ClassVar[str] = "natural convection, headspace"
+    source: ClassVar[str] = "Churchill and Chu 1975, McAdams 1954 (Incropera 6th ed. Eqs. 9.26, 9.30-9.32)"
+
+    def coefficient(self, surface: Values, surroundings: Values, height: Values = 0.0) -> Values:
+        air = air_film(surface, surroundings, self.pressure)
+        heavier = heaviness(surface, surroundings, self.vapour_pressure, self.pressure)
+        rayleigh = nu.rayleigh_number(air, rounded_difference(heavier, HEAVINESS_WIDTH), self.length)
+        if self.place == "lid":
+            nusselt = nu.nusselt_horizontal_plate(rayleigh, upward_share(heavier, HEAVINESS_WIDTH))
+        else:
+            nusselt = nu.nusselt_vertical_plate(math.cos(self.lean) * rayleigh, air.prandtl)
+        return nusselt * air.conductivity / self.length
+
+
 @dataclass(frozen=True)
 class Condensation:
     """Film of vapour that condenses on a wall: latent heat into it, `condensed` times h_fg of the wall.
 
-    Parameters: plate: the convection that carries it; vapour_pressure of the gas and pressure [Pa].
+    Parameters: carrier: the convection that carries the vapour.
     Returns: heat flux leaving the wall [W/m2], never positive; surroundings is the gas. Range, reference:
     `condensed`.
     """
 
-    plate: NaturalConvectionPlate
-    vapour_pressure: float
-    pressure: float
+    carrier: HeadspaceConvection
     label: ClassVar[str] = "condensation on the dry wall"
     source: ClassVar[str] = "Chilton and Colburn 1934 (Incropera 6th ed. Eq. 6.60)"
 
     def heat_flux(self, surface: Values, surroundings: Values, height: Values, time: float) -> Values:
-        coefficient = self.plate.coefficient(surface, surroundings, height)
-        mass = condensed(coefficient, surface, surroundings, self.vapour_pressure, self.pressure)
+        coefficient = self.carrier.coefficient(surface, surroundings, height)
+        carrier = self.carrier
+        mass = condensed(coefficient, surface, surroundings, carrier.vapour_pressure, carrier.pressure)
         return -mass * water_latent_heat(surface)
 
 

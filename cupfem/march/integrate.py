@@ -25,6 +25,8 @@ MOST_STEPS = 50000
 MOST_ITERATIONS = 12
 ITERATION_TOLERANCE = 5e-3
 """Newton changes below this share of the time tolerance end the iteration."""
+DIVERGED = 150.0
+"""Change of an iterate [K] with which a stage is given up."""
 SLOW = 0.4
 """An iteration whose changes fall by less than this factor has its matrix formed anew, once a stage."""
 EARLY = 3
@@ -225,7 +227,7 @@ class _Trial:
             value = value - change
             self.march.counters.iterations += 1
             size = system.largest(change, self.state)
-            if not np.isfinite(size):
+            if not size < DIVERGED:
                 return False
             if _expected(size, previous) < tolerance:
                 self._keep(stage, value, base, time)

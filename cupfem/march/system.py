@@ -26,8 +26,8 @@ PEAK_SHARE = 0.05
 moves over few cells."""
 BORDER_STEP = 1e-5
 """Step, in scales of the drink's state, of the difference quotients that fill the border."""
-MOST_CONSISTENT, LARGEST_CORRECTION, CONSISTENT = 60, 50.0, 1e-9
-"""Steps of `System.consistent`, the largest one and the last one, in scales of the unknowns (kelvins)."""
+MOST_CONSISTENT, MOST_HALVINGS, LARGEST_CORRECTION, CONSISTENT = 60, 12, 40.0, 1e-9
+"""Of `System.consistent`: steps, halvings of one, and the largest and the last step in kelvins."""
 
 
 @dataclass(frozen=True, eq=False)
@@ -108,7 +108,7 @@ class System:
     def consistent(self, state: Floats, time: float) -> Floats:
         """The state with its algebraic unknowns solved for, as after a start or a break.
 
-        Newton steps with difference quotients, each at most a share of what the drink allows.
+        Newton steps with difference quotients, halved until the residual falls.
 
         Raises
         ------
@@ -117,22 +117,35 @@ class System:
         """
         if self.drink is None or self.drink.capacities.all():
             return state
-        state = state.copy()
         places = self._walls + np.flatnonzero(self.drink.capacities == 0.0)
         scales = self.drink.scales(self.drink_state(state))[places - self._walls]
+        state, here = state.copy(), self.loads(state, time)[0][places]
         for _ in range(MOST_CONSISTENT):
-            here = self.loads(state, time)[0][places]
             slopes = np.empty((len(places), len(places)))
-            for column, (place, scale) in enumerate(zip(places, BORDER_STEP * scales, strict=True)):
+            for column, scale in enumerate(BORDER_STEP * scales):
                 moved = state.copy()
-                moved[place] += scale
+                moved[places[column]] += scale
                 slopes[:, column] = (self.loads(moved, time)[0][places] - here) / scale
             change = np.linalg.solve(slopes, here)
             size = float(np.max(np.abs(change) / scales))
-            state[places] -= change * min(1.0, LARGEST_CORRECTION / max(size, 1e-300))
+            change *= LARGEST_CORRECTION / max(size, LARGEST_CORRECTION)
+            state, here = self._lower(state, here, places, np.asarray(change), time)
             if size < CONSISTENT:
                 return state
         raise ConvergenceError(f"the headspace does not settle at t = {time:.6g} s")
+
+    def _lower(
+        self, state: Floats, here: Floats, places: Ints, change: Floats, time: float
+    ) -> tuple[Floats, Floats]:
+        """A state with a smaller residual on the way of a change, and the residual."""
+        for _ in range(MOST_HALVINGS):
+            trial = state.copy()
+            trial[places] -= change
+            residual = self.loads(trial, time)[0][places]
+            if not np.max(np.abs(residual)) > np.max(np.abs(here)):
+                break
+            change = 0.5 * change
+        return trial, residual
 
     def free(self, residual: Floats) -> Floats:
         """A residual with the rows of prescribed temperatures cleared (in place)."""

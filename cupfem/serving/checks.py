@@ -19,6 +19,7 @@ if TYPE_CHECKING:
 
 FREEBOARD = 10e-3  # m; from brim to level where the file tells neither level nor volume
 COLDEST_DRINK = 0.0  # degC; ice is not modelled
+ROUNDING = 1e-6  # K; the dew point is found to less
 COLDEST_ROOM, HOTTEST_ROOM = -40.0, 60.0  # degC
 
 
@@ -161,7 +162,7 @@ def _check_dew(serving: Serving, room: float, path: str, temperature: float) -> 
     if serving.room.humidity == 0.0:
         return
     dew_point = float(fluids.dew_point(room, serving.room.humidity))
-    if temperature < dew_point:
+    if temperature < dew_point - ROUNDING:
         why = f"below the room's dew point of {_celsius(dew_point)}; outside condensation is not modelled"
         instead = "write a higher temperature, or a lower room.humidity"
         raise refused(why, instead, path, _celsius(temperature))
