@@ -16,6 +16,7 @@ from cupfem.films import Values
 from cupfem.inputs import resolved_toml
 from cupfem.meridian import build as build_meridian
 from cupfem.mesh import build as build_mesh
+from cupfem.run.pad_store import pad_arrays, pads_from
 from cupfem.run.result import Ledger, Run, Series, faces_of
 from cupfem.run.touched import HoldFigures
 from cupfem.serving import Serving
@@ -84,6 +85,7 @@ def load_run(folder: str | Path) -> Run:
         defaults=tuple(told["defaults"]),
         ranges=tuple(told["ranges"]),
         touch=None if told["touch"] is None else HoldFigures(**told["touch"]),
+        pads=pads_from(arrays, serving.pad),
         films={edge: LostFilm(edge) for edge in told["films"]},
         **{name: told[name] for name in TOLD},
     )
@@ -109,4 +111,4 @@ def _arrays(run: Run) -> dict[str, Floats]:
     told |= {"counters": dict(run.counters), "space_errors": dict(run.space_errors)}
     told |= {"defaults": list(run.defaults), "ranges": list(run.ranges), "films": list(run.films)}
     told["touch"] = None if run.touch is None else asdict(run.touch)
-    return arrays | {"told": np.array(json.dumps(told))}
+    return arrays | pad_arrays(run.pads) | {"told": np.array(json.dumps(told))}

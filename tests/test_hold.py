@@ -1,0 +1,241 @@
+"""`hold`: the map, its verdict, its messages, and what `pour` tells of it."""
+
+import dataclasses
+import functools
+import json
+import math
+
+import numpy as np
+import pytest
+
+import cupfem
+from cupfem.errors import InputError
+from cupfem.run import load_run
+from cupfem.run.store import save_run
+from cupfem.serving import Pad, Serving
+
+SHORT = 'duration = "150 s"\n'
+
+
+@functools.cache
+def cup(name="single_board"):
+    return cupfem.load_cup(f"geometries/{name}.toml")
+
+
+@functools.cache
+def poured(text=SHORT, name="single_board", **options):
+    return cupfem.pour(cup(name), Serving.from_text(text), companion=False, fineness=0.5, **options)
+
+
+@functools.cache
+def held(name="single_board"):
+    return cupfem.hold(
+        poured(hold=False, name=name),
+        heights=["25 mm", "50 mm", "80 mm"],
+        pick_ups=["10 s", "60 s"],
+        longest="80 s",
+    )
+
+
+def test_a_hold_is_a_table_over_heights_and_pick_ups():
+    found = held()
+    assert found.times.thin.shape == found.times.thick.shape == (2, 3)
+    assert np.all(found.times.thin < found.middle.thin)
+    assert np.all(found.times.thin <= found.times.thick)
+    lines = found.table().splitlines()
+    assert "thin skin: 43 degC at 0.1 mm" in lines[0]
+    assert lines[1].split() == ["10", "60"]
+    assert [line.split()[0].rstrip("*~") for line in lines[2:5]] == ["80", "50", "25"]
+    assert "thick skin: 43 degC at 0.5 mm" in found.table(thick_skin=True)
+
+
+def test_the_cautions_go_with_the_table():
+    table = held().table()
+    assert "not a safety certificate" in table
+    assert "board moisture not modelled" in table
+    assert "from memory, not re-checked" in table
+    assert "within half to twice" in table
+
+
+def test_the_hottest_spot_has_a_place():
+    worst = held().figures()
+    assert worst.place == "pad rim"
+    assert worst.layer == "board"
+    assert worst.radius == pytest.approx(float(held().run.meridian.outer_radius_at(worst.height)))
+    assert worst.pick_up == 10.0
+    assert worst.thin == held().times.thin.min()
+    assert worst.thin_decided == "pain"
+
+
+def test_moments_and_bands():
+    found = held("double_wall")
+    seconds = float(found.times.thin[1, 1])
+    assert found.held_for(0.9 * seconds)[1, 1]
+    assert not found.held_for(1.1 * seconds)[1, 1]
+    assert found.first_comfortable(1e-3) == [10.0, 10.0, 10.0]
+    assert found.first_comfortable(79.0)[1] is None
+    assert found.band_not_held(1e-3) == [None, None]
+    band = found.band_not_held(79.0)[1]
+    assert band == pytest.approx((60.0, 25e-3, 80e-3))
+
+
+def test_a_cooler_cup_is_held_longer():
+    """The drink cools: a later pick-up of a light wall is held longer; and a good wall longer than a poor."""
+    assert np.all(held().times.thick[1] > held().times.thick[0])
+    assert np.all(held("double_wall").times.thin > held().times.thin)
+
+
+def test_what_is_not_reached_is_null_with_what_is_known():
+    figures = (
+        cupfem.hold(poured(hold=False, name="foam"), heights=["50 mm"], pick_ups=["60 s"]).figures().figures()
+    )
+    assert figures["hold_time_s"] is None
+    assert figures["hold_time_at_least_s"] == pytest.approx(90.0)
+    assert figures["injury_time_s"] is None
+    reached = held().figures().figures()
+    assert reached["hold_time_s"] > 0
+    assert reached["hold_time_at_least_s"] is None
+
+
+def test_a_cup_is_poured_first():
+    found = cupfem.hold(cup(), Serving.from_text('duration = "60 s"\n'), heights=["50 mm"], pick_ups=["20 s"])
+    assert found.run.serving.duration == 60.0
+    assert np.isfinite(found.times.thin).all()
+
+
+def test_the_level_of_the_drink_is_seen():
+    """Above the level the wall is cooler; a pad across it counts by its hottest place."""
+    found = cupfem.hold(
+        poured(SHORT + '[drink]\nlevel = "50 mm"\n', hold=False),
+        heights=["30 mm", "48 mm", "54 mm", "75 mm"],
+        pick_ups=["60 s"],
+        longest="60 s",
+        sections=1,
+    )
+    below, edge, across, above = found.times.thick[0]
+    assert above > 2 * below
+    assert edge == pytest.approx(below, rel=0.1)
+    assert below < across < above
+    assert list(found.near_end) == [False, True, True, False]
+
+
+# -- messages ------------------------------------------------------------------------------------------------
+
+
+@pytest.mark.parametrize(
+    ("options", "message"),
+    [
+        (
+            {"heights": ["5 mm"]},
+            r'^height: "5 mm": a pad of 15 mm there reaches beyond the wall.*"15.85 mm" to "87.5',
+        ),
+        ({"heights": [0.05]}, r"^heights: 0.05: no unit; write text with a unit"),
+        ({"heights": "50 mm"}, r'^heights: "50 mm": not a list'),
+        ({"heights": ["50"]}, r'^heights: "50": '),
+        ({"pick_ups": ["3 min"]}, r'^pick_up: "180 s": not within the serving; write a time before "150 s"'),
+        ({"longest": "5"}, r'^longest: "5": '),
+        ({"serving": Serving()}, r"^serving: given together with a run"),
+    ],
+)
+def test_refusals(options, message):
+    with pytest.raises(InputError, match=message):
+        cupfem.hold(poured(hold=False), **options)
+
+
+def test_a_pad_beyond_the_wall_is_refused():
+    with pytest.raises(InputError, match=r"^pad\.1: .*reaches beyond the wall.*move the pad"):
+        poured(SHORT + '[[pad]]\nheight = "92 mm"\n')
+
+
+# -- what pour tells -----------------------------------------------------------------------------------------
+
+TARGET = '[target]\nhold_time = "{asked}"\nbetween = ["45 mm", "70 mm"]\n'
+
+
+@pytest.mark.parametrize(("asked", "word"), [("1 s", "PASS"), ("60 s", "FAIL")])
+def test_a_target_of_hold_time_is_judged_with_its_margin(asked, word):
+    run = poured(SHORT + TARGET.format(asked=asked))
+    line = next(line for line in run.summary().splitlines() if "hold time from" in line)
+    assert line.strip().startswith(word)
+    reached = run.figures()["hold_time_s"]
+    assert f"margin {reached - float(asked[:-2]):+.3g} s" in line
+    assert 45.0 - 7.5 - 1e-6 <= run.figures()["hold_time_height_mm"] <= 70.0 + 7.5 + 1e-6
+
+
+def test_the_summary_has_a_short_verdict_with_its_caution():
+    run = poured(hold=True)
+    text = run.summary()
+    assert "can be held, 42.8 to 68.4 mm high" in text
+    assert "thin skin, pain" in text
+    assert "injury in thin skin after" in text
+    assert "not a safety certificate" in text
+    assert "free-wall figures, not a hold time" not in text
+    assert "free-wall figures, not a hold time" in poured(hold=False).summary()
+
+
+def test_the_verdict_is_that_of_the_map():
+    figures = poured(hold=True).figures()
+    found = cupfem.hold(
+        poured(hold=False),
+        heights=["42.75 mm", "68.4 mm"],
+        pick_ups=["10 s", "60 s"],
+        longest="100 s",
+        sections=1,
+    ).figures()
+    assert figures["hold_time_s"] == pytest.approx(found.thin, rel=0.02)
+    assert figures["hold_time_thick_skin_s"] == pytest.approx(found.thick, rel=0.02)
+
+
+def test_pads_of_the_serving_are_the_verdict():
+    run = poured(SHORT + '[[pad]]\nheight = "55 mm"\npick_up = "40 s"\n')
+    figures = run.figures()
+    assert figures["hold_time_pick_up_s"] == 40.0
+    assert figures["hold_time_height_mm"] in (pytest.approx(47.5, abs=0.1), pytest.approx(62.5, abs=0.1))
+    assert "hand" in run.ledger.out
+
+
+def test_a_contact_and_a_skin_of_the_pad_change_the_answer():
+    base = '[[pad]]\nheight = "55 mm"\npick_up = "40 s"\nrelease = "80 s"\n'
+    times = [
+        poured(SHORT + base + more).figures()["hold_time_thick_skin_s"]
+        for more in ("", 'contact = "300 W/(m^2 K)"\n', 'skin = "thin"\n')
+    ]
+    assert len({round(each, 2) for each in times}) == 3
+    assert times[1] > times[0]
+
+
+def test_crush_of_a_gap_changes_the_answer():
+    base = '[[pad]]\nheight = "55 mm"\npick_up = "40 s"\n'
+    usual, crushed = (
+        poured('duration = "140 s"\n' + base + more, "double_wall").figures()["hold_time_s"]
+        for more in ("", "gap_resistance = 0.5\n")
+    )
+    assert crushed < 0.9 * usual
+
+
+def test_a_run_folder_keeps_the_verdict(tmp_path):
+    run = poured(SHORT + '[[pad]]\nheight = "55 mm"\npick_up = "40 s"\n')
+    save_run(run, tmp_path)
+    again = load_run(tmp_path)
+    assert again.touch == run.touch
+    assert again.figures() == run.figures()
+    assert again.serving.pad == run.serving.pad
+    np.testing.assert_array_equal(again.pads[0].skin, run.pads[0].skin)
+
+
+def test_a_loaded_run_can_be_held(tmp_path):
+    run = poured(hold=False)
+    save_run(run, tmp_path)
+    options = {"heights": ["50 mm"], "pick_ups": ["60 s"], "longest": "60 s"}
+    first, second = cupfem.hold(run, **options), cupfem.hold(load_run(tmp_path), **options)
+    np.testing.assert_allclose(second.times.thin, first.times.thin, rtol=1e-9)
+
+
+def test_figures_are_plain_numbers():
+    told = dataclasses.asdict(held().figures())
+    assert json.loads(json.dumps({key: value for key, value in told.items() if value != math.inf}))
+
+
+def test_the_default_pad_is_told():
+    assert Pad(height="50 mm").width == 15e-3
+    assert held().pad.skin == "finger pad"
