@@ -263,7 +263,7 @@ def _band(cup: Cup, index: int) -> LayerBand:
     heights, values = np.array(layer.thickness_along).T if layer.thickness_along else (None, None)
     return LayerBand(
         layer.name,
-        cup.material(layer.material),
+        cup.layer_material(layer),
         layer.thickness,
         low,
         high,

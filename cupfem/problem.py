@@ -15,7 +15,7 @@ from numpy.typing import NDArray
 
 from cupfem import edges
 from cupfem.conduction import Conditions, Conduction, Exchange, GasLayer, Solid, Window
-from cupfem.cup import Cup
+from cupfem.cup import Cup, Layer
 from cupfem.drink import Ambient, Drink, Headspace, Lid, Lumped, Surface
 from cupfem.edges import TO_DRINK
 from cupfem.errors import InputError, nearest
@@ -29,6 +29,7 @@ from cupfem.meridian import build as build_meridian
 from cupfem.mesh import SectionMesh
 from cupfem.mesh import build as build_mesh
 from cupfem.serving import COINCIDENT, Serving, check, fill_volume
+from cupfem.unit_cell import effective_layer
 
 Floats = NDArray[np.float64]
 Overrides = Mapping[str, Film]
@@ -179,11 +180,18 @@ def properties(
             gap = edges.gap_of(cup, index, pressure=pressure)
             given[layer.name] = GasLayer(gap, _air(gap.pressure), edges.gap_height(cup, index))
         else:
-            given[layer.name] = solid(material)
+            cells = layer.flute is not None or layer.strut is not None
+            given[layer.name] = repeated(cup, layer) if cells else solid(material)
             given[f"{layer.name} pocket"] = GasLayer(_pocket(cup, index), _air(pressure))
     if cup.base_disc is not None:
         given["base"] = solid(cup.material(cup.base_disc.material))
     return {name: given[name] for name in mesh.regions}
+
+
+def repeated(cup: Cup, layer: Layer) -> Solid:
+    """Conductivities and heat capacity of a layer of flutes or struts, from one of their cells."""
+    found = effective_layer(cup, layer)
+    return Solid(found.through, found.along, found.heat_capacity)
 
 
 def solid(material: Material) -> Solid:

@@ -4,6 +4,7 @@
 `model` the cup, `checks` what must hold between its parts.
 """
 
+from cupfem.cup.cells import Flute, Strut
 from cupfem.cup.checks import RESERVED_NAMES
 from cupfem.cup.layers import Layer, Ridge, SleeveLayer
 from cupfem.cup.model import Base, Cup, cup_schema, load_cup
@@ -15,12 +16,14 @@ __all__ = [
     "RESERVED_NAMES",
     "Base",
     "Cup",
+    "Flute",
     "Layer",
     "Outline",
     "Profile",
     "Ridge",
     "Sleeve",
     "SleeveLayer",
+    "Strut",
     "cup_schema",
     "load_cup",
     "load_sleeve",

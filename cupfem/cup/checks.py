@@ -7,7 +7,7 @@ from collections.abc import Iterator
 from itertools import pairwise
 from typing import TYPE_CHECKING
 
-from cupfem.cup.layers import Layer
+from cupfem.cup.layers import THICKNESS_KEYS, Layer
 from cupfem.errors import InputError
 from cupfem.inputs import refused
 from cupfem.quantities import format_quantity
@@ -26,6 +26,7 @@ _NEAR = 1e-9  # m; heights closer than this are one height
 
 def check(cup: Cup) -> None:
     """All checks but those of names and materials."""
+    _check_cells(cup)
     _check_ranges(cup)
     _check_outline(cup)
     _check_section(cup)
@@ -50,7 +51,7 @@ def idle_keys(cup: Cup) -> dict[str, str]:
 
 
 def _idle(cup: Cup, layer: Layer) -> Iterator[tuple[str, str]]:
-    if layer.grammage is not None or layer.thickness_along or layer.ridge is not None:
+    if any(getattr(layer, key) for key in THICKNESS_KEYS if key != "thickness"):
         yield "thickness", "another key gives the thickness"
     if not any(cup.blends(layer)):
         for key in ("blend", "contact"):
@@ -111,7 +112,9 @@ def check_names(cup: Cup) -> None:
 
 def check_materials(cup: Cup) -> None:
     """Each material is known."""
-    used = {f"layer.{layer.name}.material": layer.material for layer in cup.layer}
+    used = {}
+    for layer in cup.layer:
+        used[f"layer.{layer.name}.material"] = layer.material
     if cup.base_disc:
         used["base.material"] = cup.base_disc.material
     for path, name in used.items():
@@ -121,6 +124,24 @@ def check_materials(cup: Cup) -> None:
             if error.what.startswith("material."):  # a table of the user's own, which has a place of its own
                 raise
             raise refused(error.why, error.instead, path, name) from None
+
+
+def _check_cells(cup: Cup) -> None:
+    """Flutes and struts are of board, and stand between boards."""
+    for layer in cup.layer:
+        key = "flute" if layer.flute is not None else "strut"
+        if getattr(layer, key) is None:
+            continue
+        if cup.is_gas(layer):
+            why = "it tells the board, and a gas is none"
+            raise refused(why, "choose a solid", f"layer.{layer.name}.material", layer.material)
+        for low, high in pairwise(_ends(cup)):
+            stack = cup.stack(0.5 * (low + high))
+            place = stack.index(layer) if layer in stack else 1
+            beside = [*stack[max(place - 1, 0) : place], *stack[place + 1 : place + 2]]
+            if layer in stack and (len(beside) < 2 or any(map(cup.is_gas, beside))):
+                why = f"from {_mm(low)} to {_mm(high)} its air lies open"
+                raise refused(why, "put a solid on both sides of it", f"layer.{layer.name}.{key}")
 
 
 def _check_ranges(cup: Cup) -> None:

@@ -9,6 +9,7 @@ from typing import Annotated, ClassVar, Literal, Self
 
 from pydantic import Field, model_validator
 
+from cupfem.cup.cells import Flute, Strut
 from cupfem.inputs import Name, NotNegative, Positive, Table, refused, within
 from cupfem.quantities import Angle, FilmCoefficient, Fraction, Grammage, Length, Pressure, format_quantity
 
@@ -16,7 +17,7 @@ Size = Annotated[Length, Positive, within("5 mm", "1 m", "length")]
 Thickness = Annotated[Length, Positive, within("1 um", "50 mm", "length")]
 Height = Annotated[Length, NotNegative, within("0 mm", "1 m", "length")]
 
-THICKNESS_KEYS = ("thickness", "grammage", "thickness_along", "ridge")
+THICKNESS_KEYS = ("thickness", "grammage", "thickness_along", "ridge", "flute", "strut")
 """Keys of which a layer has one."""
 
 
@@ -100,13 +101,17 @@ class SleeveLayer(Table):
     material: str
     """A name from the library or of a [material."..."] table."""
     thickness: Thickness = Field(default_factory=float, examples=["0.35 mm", "18 mil"])
-    """Normal to the wall; or grammage, thickness_along or a ridge."""
+    """Normal to the wall; or grammage, thickness_along, ridge, flute or strut."""
     grammage: Annotated[Grammage, Positive] | None = None
     """Mass per area, instead of thickness; the density of the material makes it a thickness."""
     thickness_along: tuple[tuple[Height, Thickness], ...] = ()
     """Thickness at rising heights on the inside face, straight between them, instead of thickness."""
     ridge: Ridge | None = None
     """The layer consists of rings of this cross-section, instead of thickness."""
+    flute: Flute | None = None
+    """The layer is fluted board, its waves along the circumference, instead of thickness."""
+    strut: Strut | None = None
+    """The layer is air with straight struts of its material, instead of thickness."""
     contact_fraction: Fraction = 0.0
     """Share of a gap's area where its two plies touch."""
     contact_conductance: Annotated[FilmCoefficient, Positive] = 100.0

@@ -16,6 +16,7 @@ import numpy as np
 from pydantic import Field, Tag, model_validator
 
 from cupfem.cup import checks
+from cupfem.cup.cells import Flute, stand_in
 from cupfem.cup.layers import Layer, Thickness
 from cupfem.cup.outline import Outline, read_points
 from cupfem.cup.profile import Profile
@@ -187,6 +188,11 @@ class Cup(InputFile):
         """A material of the cup's own or of the library."""
         return get_material(name, self._own_materials)
 
+    def layer_material(self, layer: Layer) -> Material:
+        """Material of a layer; of flutes and struts one that stands for board and air together."""
+        board, cell = self.material(layer.material), layer.flute or layer.strut
+        return board if cell is None else stand_in(board, cell)
+
     def emissivity(self, layer: Layer, face: Literal["inner", "outer"]) -> float:
         """Emissivity of a layer's inner or outer face [-]."""
         given = layer.inner_emissivity if face == "inner" else layer.outer_emissivity
@@ -257,6 +263,8 @@ class Cup(InputFile):
             thickness = layer.grammage / self.material(layer.material).density.value
         elif layer.ridge is not None:
             thickness = layer.ridge.height
+        elif (cell := layer.flute or layer.strut) is not None:
+            thickness = cell.thickness if isinstance(cell, Flute) else cell.height
         elif layer.thickness_along:
             low, high = self.layer_range(layer)
             thickness = float(np.mean([layer.thickness_at(z) for z in np.linspace(low, high, 201)]))

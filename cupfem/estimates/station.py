@@ -177,7 +177,7 @@ def _fit_conductance(cup: Cup, layer: Layer, height: float) -> float:
 
 def _layer(cup: Cup, index: int, height: float, pressure: float) -> WallLayer:
     layer = cup.layer[index]
-    material, thickness = cup.material(layer.material), layer.thickness_at(height)
+    material, thickness = cup.layer_material(layer), layer.thickness_at(height)
     if material.kind == "solid":
         capacity = material.density.value * material.specific_heat.value
         return WallLayer(layer.name, thickness, material.conductivity_through.value, capacity)
