@@ -4,6 +4,8 @@ import dataclasses
 import functools
 import json
 import math
+import re
+from pathlib import Path
 
 import numpy as np
 import pytest
@@ -14,6 +16,7 @@ from cupfem.run import load_run
 from cupfem.run.store import save_run
 from cupfem.serving import Pad, Serving
 
+ROOT = Path(__file__).parents[1]
 SHORT = 'duration = "150 s"\n'
 
 
@@ -229,6 +232,18 @@ def test_a_loaded_run_can_be_held(tmp_path):
     options = {"heights": ["50 mm"], "pick_ups": ["60 s"], "longest": "60 s"}
     first, second = cupfem.hold(run, **options), cupfem.hold(load_run(tmp_path), **options)
     np.testing.assert_allclose(second.times.thin, first.times.thin, rtol=1e-9)
+
+
+def test_the_how_to_page_holds_what_it_says(capsys, monkeypatch):
+    """Its Python runs and its serving file loads."""
+    page = (ROOT / "docs" / "howto" / "hold.md").read_text(encoding="utf-8")
+    monkeypatch.chdir(ROOT)
+    python, toml = (re.search(rf"```{kind}\n(.*?)```", page, re.DOTALL)[1] for kind in ("python", "toml"))
+    exec(compile(python, "hold.md", "exec"), {})
+    assert "can be held, 30 to 70 mm high" in capsys.readouterr().out
+    serving = Serving.from_text(toml)
+    assert serving.pad[0].gap_resistance == 0.8
+    assert serving.target.hold_time == 30.0
 
 
 def test_figures_are_plain_numbers():

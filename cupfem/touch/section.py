@@ -15,7 +15,7 @@ import numpy as np
 from numpy.typing import NDArray
 from scipy.spatial import ConvexHull
 
-from cupfem.axisymmetry import EdgePoints, source_load
+from cupfem.axisymmetry import AXISYMMETRIC, EdgePoints, Measure, source_load
 from cupfem.conduction import Conditions, Conduction, EdgeExchange, Exchange, GasLayer, Solid
 from cupfem.cup import Cup
 from cupfem.films import Film, FixedFilm
@@ -108,9 +108,18 @@ class PadSection:
 
 
 def build_section(
-    problem: Problem, pad: Pad, fineness: float, films: Mapping[str, Film], name: str = "pad"
+    problem: Problem,
+    pad: Pad,
+    fineness: float,
+    films: Mapping[str, Film],
+    name: str = "pad",
+    measure: Measure = AXISYMMETRIC,
 ) -> PadSection:
-    """Mesh a pad on the wall of a problem and put films on it."""
+    """Mesh a pad on the wall of a problem and put films on it.
+
+    In the plane measure the wall's height stands for the circumference rolled out: a cross-section with the
+    finger resolved on it.
+    """
     skin = get_skin(pad.skin)
     low, high = snapped(problem, pad, fineness)
     bands = skin_bands(problem.meridian, pad, skin, low, high)
@@ -118,7 +127,7 @@ def build_section(
     stations = stations_with(problem, low, high, fineness)
     mesh = build_mesh(meridian, fineness, stations=stations, fractions=fractions(problem, skin, fineness))
     mesh = _with_core_edge(mesh, skin)
-    conduction = _conduction(problem, pad, skin, mesh, films)
+    conduction = _conduction(problem, pad, skin, mesh, films, measure)
     lines, depths = _skin_lines(mesh, skin)
     heights = np.interp(
         mesh.wall_coordinates[0, lines[:, 0]],
@@ -291,14 +300,19 @@ def _facing(mesh: SectionMesh, surface: Ints) -> Ints:
 
 
 def _conduction(
-    problem: Problem, pad: Pad, skin: Skin, mesh: SectionMesh, films: Mapping[str, Film]
+    problem: Problem,
+    pad: Pad,
+    skin: Skin,
+    mesh: SectionMesh,
+    films: Mapping[str, Film],
+    measure: Measure,
 ) -> Conduction:
     given = pad_properties(problem.cup, pad, skin, mesh)
     below = Exchange("core", {HAND: FixedFilm(skin.below)}, skin.core)
     drink = problem.system.drink
     headspace = None if drink is None else drink.headspace
     around = exchanges(problem.cup, problem.serving, mesh, films, headspace)
-    conduction = Conduction(mesh, given, Conditions((*around, below)))
+    conduction = Conduction(mesh, given, Conditions((*around, below)), measure)
     conduction.exchanges.append(Perfusion(conduction, skin))
     return conduction
 
