@@ -53,6 +53,7 @@ class Problem:
     mesh: SectionMesh
     system: System
     start: Floats
+    gaps: Mapping[str, GasLayer]
 
     def enter(self, time: float) -> None:
         """Set what is constant from a break on: room, lid, stirring, table, steady drinking and pouring."""
@@ -98,7 +99,8 @@ def build(cup: Cup, serving: Serving, fineness: float = 1.0, films: Overrides | 
     mesh = build_mesh(meridian, fineness)
     headspace = headspace_of(cup, serving)
     conditions = Conditions(tuple(exchanges(cup, serving, mesh, films, headspace)))
-    conduction = Conduction(mesh, properties(cup, mesh, serving.room.pressure), conditions)
+    given = properties(cup, mesh, serving.room.pressure)
+    conduction = Conduction(mesh, given, conditions)
     drink = Drink(serving.drink.liquid, meridian, drink_surface(serving), headspace=headspace)
     ambient = ambient_at(serving, 0.0)
     system = System([Section(conduction)], drink, ambient)
@@ -106,7 +108,8 @@ def build(cup: Cup, serving: Serving, fineness: float = 1.0, films: Overrides | 
     start = system.state(
         [wall], drink.start(serving.drink.temperature, _first_level(meridian, serving), ambient)
     )
-    return Problem(cup, serving, meridian, mesh, system, system.consistent(start, 0.0))
+    gaps = {name: region for name, region in given.items() if isinstance(region, GasLayer)}
+    return Problem(cup, serving, meridian, mesh, system, system.consistent(start, 0.0), gaps)
 
 
 def _first_level(meridian: Meridian, serving: Serving) -> float:

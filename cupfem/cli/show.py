@@ -23,7 +23,7 @@ def show_run(console: Console, run: Run, units: Units) -> None:
         colour = "green" if verdict.passed else "red"
         console.print(f"[bold {colour}]{escape(headline.verdict_line(verdict, units))}[/bold {colour}]")
     _section(console, "Uncertainty", headline.uncertainty_lines(run))
-    _section(console, "Correlations outside their range", run.ranges)
+    _section(console, "Correlations and their ranges", run.ranges)
     _section(console, "Defaults used", ["; ".join(run.defaults)] if run.defaults else [])
     console.print(f"\n[bold]Caution[/bold]\n{CAUTION}")
 

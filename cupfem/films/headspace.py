@@ -12,11 +12,14 @@ from cupfem.films import correlations as nu
 from cupfem.films.base import (
     GRAVITY,
     STEFAN_BOLTZMANN,
+    Applied,
     Values,
     fourth_power_difference,
+    reached,
     rounded_difference,
     upward_share,
 )
+from cupfem.films.correlations import FluidState
 from cupfem.films.outside import Convection, air_film
 from cupfem.fluids import (
     GAS_CONSTANT_VAPOUR,
@@ -101,10 +104,20 @@ class HeadspaceConvection(Convection):
     label: ClassVar[str] = "natural convection, headspace"
     source: ClassVar[str] = "Churchill and Chu 1975, McAdams 1954 (Incropera 6th ed. Eqs. 9.26, 9.30-9.32)"
 
+    def _numbers(self, surface: Values, gas: Values) -> tuple[FluidState, Values, Values]:
+        air = air_film(surface, gas, self.pressure)
+        heavier = heaviness(surface, gas, self.vapour_pressure, self.pressure)
+        buoyancy = rounded_difference(heavier, HEAVINESS_WIDTH)
+        return air, nu.rayleigh_number(air, buoyancy, self.length), heavier
+
+    def applied(self, surface: Values, surroundings: Values) -> list[Applied]:
+        _, rayleigh, heavier = self._numbers(surface, surroundings)
+        if self.place == "lid":
+            return nu.reached_by_plate(rayleigh, heavier)
+        return [reached(nu.VERTICAL_PLATE, rayleigh)]
+
     def coefficient(self, surface: Values, surroundings: Values, height: Values = 0.0) -> Values:
-        air = air_film(surface, surroundings, self.pressure)
-        heavier = heaviness(surface, surroundings, self.vapour_pressure, self.pressure)
-        rayleigh = nu.rayleigh_number(air, rounded_difference(heavier, HEAVINESS_WIDTH), self.length)
+        air, rayleigh, heavier = self._numbers(surface, surroundings)
         if self.place == "lid":
             nusselt = nu.nusselt_horizontal_plate(rayleigh, upward_share(heavier, HEAVINESS_WIDTH))
         else:

@@ -13,6 +13,7 @@ from cupfem.films import Film
 from cupfem.inputs import defaults_used
 from cupfem.march import March
 from cupfem.pour.grip import Grip
+from cupfem.pour.ranges import ranges_reached
 from cupfem.pour.record import Recorder, series_times, snapshot_times
 from cupfem.problem import Problem, build
 from cupfem.run import Run, faces_of
@@ -130,7 +131,13 @@ def _march(
         drink_states=recorder.drink_states,
         films=films,
         pads=grip.results(),
+        ranges=_ranges(problem, recorder),
     )
+
+
+def _ranges(problem: Problem, recorder: Recorder) -> tuple[str, ...]:
+    drink = (recorder.series().time, recorder.drink_states)
+    return ranges_reached(problem, recorder.snapshot_times, recorder.snapshots, *drink)
 
 
 def _regrip(grip: Grip, state: Floats, time: float, recorder: Recorder) -> Floats:
