@@ -395,11 +395,31 @@ def test_a_full_disk_leaves_nothing(run, tmp_path):
     assert names(tmp_path) == set()
 
 
+@pytest.mark.parametrize("foreign", [False, True])
+def test_fields_that_cannot_be_written_leave_nothing(run, here, monkeypatch, foreign):
+    """The disk fills up with the third file; what others keep in the folder stays."""
+    write, calls = Path.write_text, []
+
+    def full(path, text, **settings):
+        calls.append(path)
+        if len(calls) == 3:
+            raise OSError(errno.ENOSPC, os.strerror(errno.ENOSPC))
+        return write(path, text, **settings)
+
+    if foreign:
+        (here / "fields").mkdir()
+        (here / "fields" / "notes.txt").touch()
+    monkeypatch.setattr(Path, "write_text", full)
+    with pytest.raises(cupfem.InputError, match=r'output: "fields\.pvd": the disk is full'):
+        cupfem.write_fields(run, "fields.pvd")
+    assert {file.name for file in here.rglob("*")} == ({"fields", "notes.txt"} if foreign else set())
+
+
 LIMITED = """
 import resource, sys, cupfem
 from cupfem.exchange import write_run
 run = cupfem.load_run(sys.argv[1])
-resource.setrlimit(resource.RLIMIT_FSIZE, (20000, 20000))
+resource.setrlimit(resource.RLIMIT_FSIZE, (int(sys.argv[3]), int(sys.argv[3])))
 try:
     write_run(run, sys.argv[2])
 except cupfem.InputError as error:
@@ -407,10 +427,12 @@ except cupfem.InputError as error:
 """
 
 
-def test_a_write_that_the_system_refuses_halfway_leaves_nothing(folder, tmp_path):
-    line = [sys.executable, "-c", LIMITED, str(folder), str(tmp_path / "pour")]
+@pytest.mark.parametrize("largest", [1000, 30000, 100000])
+def test_a_write_that_the_system_refuses_halfway_leaves_nothing(folder, tmp_path, largest):
+    """In the summary, in the series, and in the arrays; the message names the folder that was asked for."""
+    line = [sys.executable, "-c", LIMITED, str(folder), str(tmp_path / "pour"), str(largest)]
     done = subprocess.run(line, check=True, cwd=ROOT, capture_output=True, text=True)
-    assert re.fullmatch(r'run folder: "\S+pour": a file grew beyond what is allowed here; .*\n', done.stdout)
+    assert re.fullmatch(r'run folder: "\S+/pour": a file grew beyond what is allowed here; .*\n', done.stdout)
     assert names(tmp_path) == set()
 
 

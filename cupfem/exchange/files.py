@@ -30,12 +30,23 @@ _REASONS = {
 
 @contextmanager
 def explained(place: Path, what: str = "output") -> Iterator[None]:
-    """Turn what the operating system refuses inside the block into an InputError about a place."""
+    """Turn what the operating system refuses inside the block into an InputError about a place.
+
+    Blocks may lie within each other; the message then names the outermost place.
+    """
     try:
         yield
     except OSError as error:
-        why, instead = _REASONS.get(error.errno or 0, (error.strerror or str(error), "name another place"))
-        raise InputError(what, shown(place), why, instead) from error
+        raise _told(error, place, what) from error
+    except InputError as error:
+        if not isinstance(error.__cause__, OSError):
+            raise
+        raise _told(error.__cause__, place, what) from error.__cause__
+
+
+def _told(error: OSError, place: Path, what: str) -> InputError:
+    why, instead = _REASONS.get(error.errno or 0, (error.strerror or str(error), "name another place"))
+    return InputError(what, shown(place), why, instead)
 
 
 def shown(place: Path) -> str:

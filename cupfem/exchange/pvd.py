@@ -17,17 +17,24 @@ Moments = Iterable[tuple[float, str]]
 def write_pvd(path: str | Path, parts: Mapping[str, Moments]) -> Path:
     """Write one `.pvd` file for each part, whose key is added to the name; returns that of the part "".
 
-    A `.pvd` file is written after the files that it names. Those of an earlier writing are removed first.
+    A `.pvd` file is written after the files that it names. Those of an earlier writing are removed first, and
+    all of this one if it fails.
     """
     path = Path(path)
     if path.suffix != ".pvd":
         raise InputError("fields", str(path), "the name must end in .pvd", 'write "fields.pvd"')
+    folder = path.with_suffix("")
     with explained(path):
-        folder = path.with_suffix("")
         folder.mkdir(exist_ok=True)
         _clear(path, folder)
-        for part, moments in parts.items():
-            _write_part(path.with_name(f"{path.stem}{part}.pvd"), folder, moments)
+        try:
+            for part, moments in parts.items():
+                _write_part(path.with_name(f"{path.stem}{part}.pvd"), folder, moments)
+        except BaseException:
+            _clear(path, folder)
+            if not any(folder.iterdir()):
+                folder.rmdir()
+            raise
     return path
 
 
