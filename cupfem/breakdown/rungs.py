@@ -1,0 +1,150 @@
+"""The rungs of the ladder at one station: what each estimate says of the wall and of the drink.
+
+Array shapes: t times, h stations.
+"""
+
+from __future__ import annotations
+
+from collections.abc import Callable, Mapping
+from dataclasses import dataclass
+from functools import cached_property
+
+import numpy as np
+from numpy.typing import NDArray
+
+from cupfem.cup import Cup
+from cupfem.estimates import (
+    Effective,
+    SlabEstimate,
+    Station,
+    Steady,
+    TimeScales,
+    drink_course,
+    effective,
+    follow,
+    lumped_cooling,
+    slab_estimate,
+    station,
+    steady,
+    time_scales,
+    two_node,
+)
+from cupfem.serving import Serving
+
+Floats = NDArray[np.float64]
+
+RUNGS: Mapping[str, str] = {
+    "a": "L2/alpha: heated through after one time scale",
+    "b": "steady resistance network, drink as poured",
+    "c1": "one term of the series, drink as poured",
+    "c": "full series, drink as poured",
+    "e": "two time scales: network behind a lumped drink",
+    "d": "layered radial transient, lumped drink",
+}
+"""Rungs that tell a wall temperature, from the simplest up; (f), the first touch, tells one of the skin."""
+SIMPLEST_FIRST = ("a", "b", "c1", "c", "e", "d")
+ELEMENTS, TOLERANCE = 4, 5e-3
+"""Of the radial estimate here; against its defaults the outer face moves by less than 0.02 K."""
+COURSE_POINTS = 5
+"""Temperatures of the drink at which the network of a station is solved."""
+NO_DRIVE = 1e-6  # K; between sides of one temperature nothing flows
+
+
+@dataclass(frozen=True, eq=False)
+class Servings:
+    """What the rungs need of cup and serving once, for all stations: the drink `[t]` [degC] of each rung."""
+
+    cup: Cup
+    serving: Serving
+    times: Floats
+
+    @cached_property
+    def drink(self) -> Mapping[str, Floats]:
+        """Temperature of the drink by rung."""
+        held = np.full(len(self.times), self.serving.drink.temperature)
+        course = np.asarray(drink_course(self.cup, self.serving, tolerance=TOLERANCE)(self.times))
+        lumped = lumped_cooling(self.cup, self.serving, self.times)
+        return {"a": held, "b": held, "c1": held, "c": held, "e": lumped, "d": course}
+
+    @cached_property
+    def scales(self) -> TimeScales:
+        """Of wall and drink at the pour."""
+        return time_scales(self.cup, self.serving)
+
+    @cached_property
+    def short_time(self) -> float:
+        """The shorter time constant of wall and drink as two nodes [s]."""
+        return two_node(self.cup, self.serving).time_constants[0]
+
+    def curve(self, rung: str) -> Callable[[float], float]:
+        """The drink of a rung as a function of the time [s]."""
+        return along_times(self.times, self.drink[rung])
+
+
+def along_times(times: Floats, values: Floats) -> Callable[[float], float]:
+    """A series as a function of the time [s], linear in between."""
+    return lambda time: float(np.interp(time, times, values))
+
+
+@dataclass(frozen=True, eq=False)
+class Ladder:
+    """All rungs at one station: outer and inner face by rung, `[t]` [degC]."""
+
+    station: Station
+    network: Steady
+    wall: Effective
+    slab: SlabEstimate | None
+    """None where nothing drives heat through the wall: below the floor, or dry in the open."""
+    outer: Mapping[str, Floats]
+    inner: Mapping[str, Floats]
+
+    @property
+    def outer_biot(self) -> float:
+        """h L / k of the outer film."""
+        return self.network.outer_coefficient / self.wall.conductance
+
+
+def ladder(given: Servings, height: float) -> Ladder:
+    """The rungs at a height [m]."""
+    place = station(given.cup, given.serving, height)
+    network = steady(place)
+    wall = effective(place, network.temperature.tolist())
+    driven = bool(place.inner.films) and abs(place.inside - place.outside) > NO_DRIVE
+    slab = slab_estimate(place, inner_film=not place.wetted) if driven else None
+    outer, inner = _by_hand(given, place, network, wall, slab)
+    radial = follow(
+        given.cup, given.serving, height, given.curve("d"), elements=ELEMENTS, tolerance=TOLERANCE
+    ).interfaces(given.times)
+    outer["d"], inner["d"] = radial[:, -1], radial[:, 0]
+    return Ladder(place, network, wall, slab, outer, inner)
+
+
+def _by_hand(
+    given: Servings, place: Station, network: Steady, wall: Effective, slab: SlabEstimate | None
+) -> tuple[dict[str, Floats], dict[str, Floats]]:
+    times, start = given.times, place.start_temperature
+    first, last = float(network.temperature[0]), float(network.temperature[-1])
+    through = times >= wall.time_scale
+    outer = {"a": np.where(through, last, start), "b": np.full(len(times), last)}
+    inner = {"a": np.where(through, first, start), "b": np.full(len(times), first)}
+    for rung, terms in (("c1", 1), ("c", None)):
+        outer[rung] = np.full(len(times), last) if slab is None else slab.outside(times, terms)
+        inner[rung] = np.where(times > 0.0, first, start)
+    for faces, index in ((outer, -1), (inner, 0)):
+        faces["e"] = _behind_lumped_drink(given, place, index)
+    return outer, inner
+
+
+def _behind_lumped_drink(given: Servings, place: Station, index: int) -> Floats:
+    """A face of the steady network behind the lumped drink `[t]`, approached with the shorter time constant.
+
+    Common practice, no source.
+    """
+    drink = given.drink["e"]
+    if not place.wetted:
+        drink = np.full(len(drink), place.inside)
+    grid = np.linspace(float(drink.min()) - NO_DRIVE, float(drink.max()) + NO_DRIVE, COURSE_POINTS)
+    faces = [float(steady(place, float(temperature)).temperature[index]) for temperature in grid]
+    settled = np.interp(drink, grid, faces)
+    missing = (settled[0] - place.start_temperature) * np.exp(-given.times / given.short_time)
+    return np.asarray(settled - missing)
