@@ -254,3 +254,56 @@ def test_figures_are_plain_numbers():
 def test_the_default_pad_is_told():
     assert Pad(height="50 mm").width == 15e-3
     assert held().pad.skin == "finger pad"
+
+
+RIDGED = """
+title = "ridged"
+base = "none"
+[cup]
+height = "95 mm"
+inner_top_diameter = "78 mm"
+inner_foot_diameter = "55 mm"
+[[layer]]
+name = "inner"
+material = "cupstock board"
+thickness = "0.35 mm"
+[[layer]]
+name = "ribs"
+material = "foamed polyethylene coat"
+[layer.ridge]
+height = "0.6 mm"
+crest_width = "2 mm"
+flank_angle = "30 deg"
+first = "22 mm"
+pitch = "6 mm"
+count = 10
+"""
+
+
+def test_solid_ridges_are_held_at_their_crests():
+    """Ribs of foam are held longer than the bare board; the crest is named; there is no section."""
+    ridged = cupfem.pour(
+        cupfem.Cup.from_text(RIDGED), Serving.from_text(SHORT), fineness=0.5, companion=False
+    )
+    bare_text = RIDGED[: RIDGED.index('[[layer]]\nname = "ribs"')]
+    bare = cupfem.pour(
+        cupfem.Cup.from_text(bare_text), Serving.from_text(SHORT), fineness=0.5, companion=False
+    )
+    options = {"heights": ["50 mm"], "pick_ups": ["30 s"], "longest": "80 s"}
+    crest, plain = (cupfem.hold(run, **options) for run in (ridged, bare))
+    assert crest.times.thin[0, 0] > 1.5 * plain.middle.thin[0, 0]
+    assert crest.figures().place.endswith("crest")
+    assert not crest.solved.any()
+    assert crest.near_end.all()
+    with pytest.raises(InputError, match=r"^pad: .*lies on solid ridges.*use hold"):
+        cupfem.pour(ridged.cup, Serving.from_text(SHORT + '[[pad]]\nheight = "50 mm"\n'), companion=False)
+
+
+def test_a_lid_keeps_the_wall_above_the_drink_hot():
+    """Under a lid the wall above the level is held for a shorter time than without."""
+    times = []
+    for lid in ("", '[lid]\nsip_hole = "1.2 cm^2"\n'):
+        run = poured(SHORT + lid + '[drink]\nlevel = "45 mm"\n', hold=False)
+        found = cupfem.hold(run, heights=["70 mm"], pick_ups=["60 s"], longest="80 s", sections=1)
+        times.append(float(found.contact.thick[-1, 0, 0]))
+    assert times[1] > times[0] + 3

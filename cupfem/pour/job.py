@@ -18,7 +18,7 @@ from cupfem.pour.record import Recorder, series_times, snapshot_times
 from cupfem.problem import Problem, build
 from cupfem.run import Run, faces_of
 from cupfem.serving import Serving
-from cupfem.touch.holding import verdict
+from cupfem.touch.verdict import verdict
 
 Floats = NDArray[np.float64]
 

@@ -99,7 +99,7 @@ def touch(
     longest: float,
     *,
     skin: Skin,
-    conductance: float | None = None,
+    conductance: float | Floats | None = None,
     gap_resistance: float = 1.0,
     problem: Problem | None = None,
 ) -> Contact:
@@ -112,7 +112,7 @@ def touch(
     longest:
         Longest contact [s].
     conductance:
-        Contact conductance [W/(m2 K)]; left out: by the class of the outer layer's surface.
+        Contact conductance [W/(m2 K)], one or `[h]`; left out: by the class of the outer layer's surface.
     gap_resistance:
         Share of each gap's resistance that is left under the grip.
     problem:
@@ -126,7 +126,7 @@ def touch(
     _check(run, heights, pick_ups)
     layers = [run.meridian.outer_layer_at(float(height)) for height in heights]
     by_class = np.array([contact_conductance(layer.material) for layer in layers])
-    chosen = by_class if conductance is None else np.full(len(heights), conductance)
+    chosen = by_class if conductance is None else np.broadcast_to(conductance, heights.shape).astype(float)
     problem = problem or problem_of(run)
     march = _March(run, problem, heights, pick_ups, skin, chosen, gap_resistance)
     time = step_times(longest)

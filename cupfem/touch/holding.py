@@ -7,7 +7,7 @@ near an end of a layer, of a blend or of a ridge get section solves of their own
 from __future__ import annotations
 
 from collections.abc import Sequence
-from dataclasses import dataclass, replace
+from dataclasses import dataclass
 
 import numpy as np
 from numpy.typing import NDArray
@@ -19,8 +19,8 @@ from cupfem.serving import Pad
 from cupfem.skin import THRESHOLD_SOURCE, get_skin
 from cupfem.touch.contact import Contact, problem_of, touch
 from cupfem.touch.criteria import HoldTimes, judge
-from cupfem.touch.felt import felt, pad_verdict
-from cupfem.touch.rim import Rim, at_hottest, rim_at
+from cupfem.touch.rim import Rim, at_hottest, no_excess, rim_at
+from cupfem.touch.section import PadContact, on_solid_ridges
 
 Floats = NDArray[np.float64]
 Flags = NDArray[np.bool_]
@@ -30,14 +30,9 @@ PICK_UPS = (5.0, 10.0, 20.0, 30.0, 45.0, 60.0, 90.0, 120.0, 180.0, 240.0, 300.0,
 HEIGHTS = 40
 LONGEST = 300.0
 """Longest hold that is tried [s]."""
-GRIP_BAND = (0.45, 0.72)
-"""Where a cup is gripped, as a share of its height: about 0.5 to 0.67 (habit, from memory), and two thirds in
-the usual test of stiffness."""
-VERDICT_HEIGHTS, VERDICT_PICK_UPS = 5, (10.0, 30.0, 60.0, 120.0, 240.0)
-"""Heights of the grip band and pick-ups [s] of the short verdict."""
 SECTIONS = 5
 """Most section solves of a map."""
-BESIDE = (-0.5, -0.25, 0.25, 0.5)
+BESIDE = (-0.5, -0.375, -0.25, -0.125, 0.125, 0.25, 0.375, 0.5)
 """Where further columns of a pad on an uneven wall stand, in widths from its middle."""
 JUDGED_AT = 30.0
 """Time of touching [s] at which the hottest column under such a pad is chosen."""
@@ -60,6 +55,8 @@ class Hold:
         `[h]` heights whose excess comes from a section solve at the height itself.
     near_end:
         `[h]` heights where a pad reaches an end of a layer.
+    columns:
+        `[p, h]` heights [m] of the columns that stand for the pads.
     """
 
     run: Run
@@ -72,6 +69,7 @@ class Hold:
     rims: tuple[Rim, ...]
     solved: Flags
     near_end: Flags
+    columns: Floats
 
     def held_for(self, seconds: float, thick_skin: bool = False) -> Flags:
         """Whether `[p, h]` the cup can be held for so long."""
@@ -104,8 +102,9 @@ class Hold:
         thick = _place_of_least(times.thick, times.at_least, self.contact.thick)
         injury = _place_of_least(times.injury, times.at_least, self.contact.thin)
         rim = self.rims[thin[1]]
-        shift = rim.hottest - rim.height
-        height = float(self.heights[thin[1]]) + shift
+        column, middle = float(self.columns[thin]), float(self.heights[thin[1]])
+        shift = rim.hottest - rim.height if column == middle else column - middle
+        height = middle + shift
         return HoldFigures(
             thin=float(times.thin[thin]),
             thick=float(times.thick[thick]),
@@ -118,13 +117,22 @@ class Hold:
             height=height,
             radius=float(self.run.meridian.outer_radius_at(height)),
             layer=self.run.meridian.outer_layer_at(height).name,
-            place="pad rim" if abs(abs(shift) - 0.5 * self.pad.width) < END_MARGIN else "within the pad",
+            place=self._place(height, shift),
             pick_up=float(self.pick_ups[thin[0]]),
             low=float(self.heights.min()),
             high=float(self.heights.max()),
             skin=self.pad.skin,
             conductance=float(self.contact.conductance[thin[1]]),
         )
+
+    def _place(self, height: float, shift: float) -> str:
+        """Where on a pad: its rim or within; on a ridged wall also crest or valley."""
+        reach = 0.5 * self.pad.width
+        name = "pad rim" if abs(abs(shift) - reach) < END_MARGIN else "within the pad"
+        if all(layer.ridge is None for layer in self.run.cup.layer):
+            return name
+        around = PadContact(self.run.meridian, self.pad, height - shift - reach, height - shift + reach)
+        return f"{name}, {'crest' if float(around.valley(np.array(height))) <= self.pad.sag else 'valley'}"
 
     def table(self, thick_skin: bool = False) -> str:
         """Hold time by height (rows) and pick-up (columns) as text, with the cautions."""
@@ -145,7 +153,7 @@ class Hold:
         """What the figures rest on."""
         worst = self.figures()
         out = ["* section solve at this height; > not reached within that time"]
-        out.append("~ pad across an end of a layer or the level: the hottest column under it")
+        out.append("~ pad across an end of a layer, a ridge or the level: the hottest column under it")
         out += [f"{name.strip()}: {value}" for name, value in worst.rows()]
         contact = f"contact conductance {worst.conductance:.4g} W/(m2 K), within half to twice"
         out.append(f"skin: {self.pad.skin}; {contact}")
@@ -200,14 +208,36 @@ def hold_map(
         pick_ups,
         longest,
         skin=get_skin(pad.skin),
-        conductance=pad.contact,
+        conductance=_conductances(problem, pad, tried),
         gap_resistance=pad.gap_resistance,
         problem=problem,
     )
-    contact = _under_pads(columns, heights, np.where(near_end & ~solved, 0.5 * pad.width, 0.0))
+    contact, places = _under_pads(columns, heights, np.where(near_end & ~solved, 0.5 * pad.width, 0.0))
     hottest = at_hottest(contact, rims)
     return Hold(
-        run, pad, heights, pick_ups, judge(hottest), judge(contact), hottest, tuple(rims), solved, near_end
+        run=run,
+        pad=pad,
+        heights=heights,
+        pick_ups=pick_ups,
+        times=judge(hottest),
+        middle=judge(contact),
+        contact=hottest,
+        rims=tuple(rims),
+        solved=solved,
+        near_end=near_end,
+        columns=places,
+    )
+
+
+def _conductances(problem: Problem, pad: Pad, heights: Floats) -> Floats:
+    """Contact conductance `[h]` [W/(m2 K)] of pads around heights: full on crests, through air in valleys."""
+    reach = 0.5 * pad.width
+    low, high = problem.meridian.floor, problem.meridian.height
+    return np.array(
+        [
+            float(PadContact(problem.meridian, pad, max(z - reach, low), min(z + reach, high))(np.array(z)))
+            for z in heights
+        ]
     )
 
 
@@ -217,14 +247,14 @@ def _beside(run: Run, heights: Floats, width: float) -> list[Floats]:
     return [np.clip(heights + share * width, low, high) for share in BESIDE]
 
 
-def _under_pads(columns: Contact, heights: Floats, reach: Floats) -> Contact:
-    """For each pad the hottest of the columns within its reach `[h]` [m]."""
+def _under_pads(columns: Contact, heights: Floats, reach: Floats) -> tuple[Contact, Floats]:
+    """For each pad the hottest of the columns within its reach `[h]` [m], and their heights `[p, h]`."""
     chosen = np.empty((len(columns.pick_ups), len(heights)), dtype=int)
     warmth = columns.thin[int(np.searchsorted(columns.time, JUDGED_AT)) - 1]
     for index, (height, span) in enumerate(zip(heights, reach, strict=True)):
         within = np.flatnonzero(np.abs(columns.heights - height) <= span + 1e-9)
         chosen[:, index] = within[np.argmax(warmth[:, within], axis=1)]
-    return columns.chosen(chosen, heights)
+    return columns.chosen(chosen, heights), columns.heights[chosen]
 
 
 def fitting(run: Run, width: float) -> tuple[float, float]:
@@ -249,17 +279,20 @@ def _rims(
 ) -> tuple[list[Rim], Flags]:
     """Excess for each height, and which heights were solved themselves."""
     kinds = [(_kind(run, float(height)), bool(end)) for height, end in zip(heights, near_end, strict=True)]
-    chosen = _chosen(kinds, most)
+    pads = [pad.model_copy(update={"height": float(height), "pick_up": pick_up}) for height in heights]
+    ridged = np.array([on_solid_ridges(problem, each) for each in pads])
+    chosen = [index for index in _chosen(kinds, most) if not ridged[index]]
     found: dict[int, Rim] = {}
     for index in chosen:
-        place = float(heights[index])
-        found[index] = rim_at(run, problem, pad.model_copy(update={"height": place, "pick_up": pick_up}))
+        found[index] = rim_at(run, problem, pads[index])
     rims = []
     for index in range(len(heights)):
         same = [each for each in found if not near_end[each]] if index not in found else [index]
         same = same or list(found)
-        nearest = min(same, key=lambda each: abs(heights[each] - heights[index]))
-        rims.append(found[nearest])
+        if ridged[index] or not same:
+            rims.append(no_excess(float(heights[index])))
+        else:
+            rims.append(found[min(same, key=lambda each: abs(heights[each] - heights[index]))])
     return rims, np.isin(np.arange(len(heights)), chosen)
 
 
@@ -279,11 +312,13 @@ def _kind(run: Run, height: float) -> tuple[str, ...]:
 
 
 def _near_end(run: Run, height: float, width: float, pick_ups: Floats) -> bool:
-    """Whether a pad at a height reaches an end of a layer within the wall, or the drink's level."""
+    """Whether a pad at a height reaches an end of a layer within the wall, a ridge, or the drink's level."""
     reach = 0.5 * width + END_MARGIN
     ends = [end for layer in run.meridian.layers for end in (*layer.reach, layer.low, layer.high)]
     ends = [end for end in ends if 1e-6 < end < run.meridian.height - 1e-6]
     ends += [float(level) for level in np.interp(pick_ups, run.time, run.series.drink_level)]
+    for layer in run.cup.layer:
+        ends += layer.ridge.middles if layer.ridge is not None else ()
     return any(abs(end - height) < reach for end in ends)
 
 
@@ -296,81 +331,3 @@ def default_pick_ups(duration: float) -> Floats:
     """Pick-ups [s] within the first two thirds of a serving."""
     given = np.array([pick_up for pick_up in PICK_UPS if pick_up <= 0.67 * duration])
     return given if len(given) else np.array([0.5 * duration])
-
-
-def grip_band(run: Run) -> tuple[float, float]:
-    """Heights between which a cup is gripped [m]: the target's, or the usual band."""
-    target = run.serving.target
-    if target is not None and target.between is not None:
-        return target.between
-    low, high = (share * run.meridian.height for share in GRIP_BAND)
-    return max(low, run.meridian.floor), high
-
-
-def verdict(run: Run, coarse: Run | None = None) -> HoldFigures:
-    """The short verdict: the serving's own pads; without them, or with a target, the grip band.
-
-    `coarse` is a coarser run of the same, on which the section solve is done.
-    """
-    target = run.serving.target
-    asked = None if target is None else target.hold_time
-    if not run.pads:
-        return _of_band(run, coarse, asked or 0.0)
-    return _of_pads(run) if asked is None else _worst(_of_pads(run), _of_band(run, coarse, asked))
-
-
-def _worst(one: HoldFigures, other: HoldFigures) -> HoldFigures:
-    """The figures of the shorter time, with the shorter of the others."""
-    first, second = sorted((one, other), key=lambda each: (each.thin, -each.at_least))
-    thick = min((first, second), key=lambda each: (each.thick, -each.thick_at_least))
-    injury = min((first, second), key=lambda each: (each.injury, -each.injury_at_least))
-    return replace(
-        first,
-        thick=thick.thick,
-        thick_at_least=thick.thick_at_least,
-        thick_decided=thick.thick_decided,
-        injury=injury.injury,
-        injury_at_least=injury.injury_at_least,
-        low=min(one.low, other.low),
-        high=max(one.high, other.high),
-    )
-
-
-def _of_band(run: Run, coarse: Run | None, asked: float) -> HoldFigures:
-    """The worst of the grip band and of a few pick-ups, from which a hold of `asked` [s] ends in time."""
-    duration = run.serving.duration
-    last = max(min(duration - asked, 0.8 * duration), 0.5 * duration)
-    pick_ups = np.array([time for time in VERDICT_PICK_UPS if time <= last])
-    pick_ups = pick_ups if len(pick_ups) else np.array([0.5 * duration])
-    heights = np.clip(np.linspace(*grip_band(run), VERDICT_HEIGHTS), *fitting(run, DEFAULT_PAD.width))
-    longest = max(LONGEST, 1.05 * asked)
-    return hold_map(coarse or run, heights, pick_ups, longest=longest, sections=1).figures()
-
-
-def _of_pads(run: Run) -> HoldFigures:
-    """The worst of a run's own pads."""
-    told = [(pad_verdict(run, field), field) for field in run.pads]
-    thin, field = min(told, key=lambda each: (each[0].thin, -each[0].at_least))
-    thick = min((each for each, _ in told), key=lambda each: (each.thick, -each.at_least))
-    injury = min((each for each, _ in told), key=lambda each: (each.injury, -each.at_least))
-    contact = felt(run, field)
-    place = int(np.argmin(np.abs(field.heights - thin.height)))
-    return HoldFigures(
-        thin=thin.thin,
-        thick=thick.thick,
-        injury=injury.injury,
-        at_least=thin.at_least,
-        thick_at_least=thick.at_least,
-        injury_at_least=injury.at_least,
-        thin_decided=thin.thin_decided,
-        thick_decided=thick.thick_decided,
-        height=thin.height,
-        radius=float(run.meridian.outer_radius_at(thin.height)),
-        layer=run.meridian.outer_layer_at(thin.height).name,
-        place=thin.place,
-        pick_up=field.pad.pick_up,
-        low=min(float(field.heights[0]) for field in run.pads),
-        high=max(float(field.heights[-1]) for field in run.pads),
-        skin=field.pad.skin,
-        conductance=float(contact.conductance[place]),
-    )

@@ -51,6 +51,12 @@ class Rim:
     hottest: float
 
 
+def no_excess(height: float) -> Rim:
+    """The column as it is, where no section can be meshed: on solid ridges."""
+    one = np.ones(1)
+    return Rim(height, np.zeros(1), one, one, one, one, height)
+
+
 def rim_at(run: Run, problem: Problem, pad: Pad, column: Contact | None = None) -> Rim:
     """Excess of a pad on the wall of a run, by one section solve from the last snapshot before its pick-up.
 

@@ -18,6 +18,7 @@ from scipy.spatial import ConvexHull
 from cupfem.axisymmetry import AXISYMMETRIC, EdgePoints, Measure, source_load
 from cupfem.conduction import Conditions, Conduction, EdgeExchange, Exchange, GasLayer, Solid
 from cupfem.cup import Cup
+from cupfem.errors import InputError
 from cupfem.films import Film, FixedFilm
 from cupfem.fluids import air_conductivity
 from cupfem.materials import Material, Value
@@ -120,6 +121,13 @@ def build_section(
     In the plane measure the wall's height stands for the circumference rolled out: a cross-section with the
     finger resolved on it.
     """
+    if on_solid_ridges(problem, pad):
+        raise InputError(
+            "pad",
+            f"{1e3 * pad.height:.4g} mm",
+            "lies on solid ridges, where a section with a finger cannot be meshed",
+            "leave the pad out and use hold, which judges crests by columns",
+        )
     skin = get_skin(pad.skin)
     low, high = snapped(problem, pad, fineness)
     bands = skin_bands(problem.meridian, pad, skin, low, high)
@@ -137,6 +145,17 @@ def build_section(
     return PadSection(
         pad, skin, mesh, conduction, lines, _facing(mesh, lines[:, 0]), heights, depths, problem.mesh, name
     )
+
+
+def on_solid_ridges(problem: Problem, pad: Pad) -> bool:
+    """Whether a pad reaches rings of a solid: there the skin does not follow the outer face."""
+    for layer in problem.cup.layer:
+        if layer.ridge is None or problem.cup.material(layer.material).kind == "gas":
+            continue
+        reach = 0.5 * layer.ridge.foot_width
+        if any(pad.low < middle + reach and pad.high > middle - reach for middle in layer.ridge.middles):
+            return True
+    return False
 
 
 # -- mesh ----------------------------------------------------------------------------------------------------
