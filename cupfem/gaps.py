@@ -21,8 +21,7 @@ from cupfem.fluids import (
     STANDARD_PRESSURE,
     air_conductivity,
     air_density,
-    air_specific_heat,
-    air_viscosity,
+    air_transport,
 )
 from cupfem.quantities import ZERO_CELSIUS
 
@@ -80,7 +79,8 @@ def temperature_jump_length(
     """
     ratio = 2.0 * HEAT_CAPACITY_RATIO / (HEAT_CAPACITY_RATIO + 1.0)
     speed = np.sqrt(0.5 * math.pi * GAS_CONSTANT_AIR * (temperature + ZERO_CELSIUS))
-    path = air_conductivity(temperature) / air_specific_heat(temperature) * speed / pressure
+    conductivity, _, specific_heat = air_transport(temperature)
+    path = conductivity / specific_heat * speed / pressure
     return (2.0 - accommodation) / accommodation * ratio * path
 
 
@@ -168,8 +168,9 @@ def gap_rayleigh(inner: Values, outer: Values, width: Values, pressure: float) -
     mean = 0.5 * (inner + outer)
     density = air_density(mean, pressure)
     buoyancy = GRAVITY * np.abs(inner - outer) / (mean + ZERO_CELSIUS)
-    heat_capacity = density * density * air_specific_heat(mean)
-    return buoyancy * heat_capacity * width**3 / (air_viscosity(mean) * air_conductivity(mean))
+    conductivity, viscosity, specific_heat = air_transport(mean)
+    heat_capacity = density * density * specific_heat
+    return buoyancy * heat_capacity * (width * width * width) / (viscosity * conductivity)
 
 
 @dataclass(frozen=True)

@@ -7,7 +7,7 @@ from __future__ import annotations
 
 from collections.abc import Callable, Mapping
 from dataclasses import dataclass
-from functools import cache
+from functools import cache, lru_cache
 from typing import Any
 
 import numpy as np
@@ -35,6 +35,8 @@ Floats = NDArray[np.float64]
 Overrides = Mapping[str, Film]
 
 EDGES = ("wetted", "dry", "outside", "underside", "heel", "brim")
+KEPT = 8
+"""Films of the last levels that are kept: matrix, loads and ledger ask for the same ones."""
 FIRST_VOLUME = 10e-6
 """Of a pour that takes a while, what is there at time zero [m3]: there has to be a drink to begin with."""
 TRACE_OF_AIR = 100.0
@@ -237,20 +239,15 @@ def _inside(
     cup: Cup, serving: Serving, mesh: SectionMesh, films: Overrides, headspace: Headspace | None
 ) -> list[Exchange]:
     """Below the level to the drink, above it to the room or to the headspace."""
-    wetted = _films(
-        films,
-        "wetted",
-        TO_DRINK,
-        lambda drink: edges.wetted_films(cup, serving, drink.level, drink.ambient.stirred),
-    )
+    made = lru_cache(maxsize=KEPT)(lambda level, stirred: edges.wetted_films(cup, serving, level, stirred))
+    wetted = _films(films, "wetted", TO_DRINK, lambda drink: made(drink.level, drink.ambient.stirred))
     out = []
     for part, layer in _layers(cup, mesh, "inside"):
         out.append(Exchange(part, wetted, _drink_temperature, _below_level, to_drink=True))
         out.append(_dry(cup, serving, films, headspace, part, edges.emissivity_of(cup, layer)))
     if cup.base_disc is not None:
-        floor = _films(
-            films, "wetted", TO_DRINK, lambda drink: edges.floor_films(cup, serving, drink.ambient.stirred)
-        )
+        on_floor = cache(lambda stirred: edges.floor_films(cup, serving, stirred))
+        floor = _films(films, "wetted", TO_DRINK, lambda drink: on_floor(drink.ambient.stirred))
         emissivity = cup.material(cup.base_disc.material).emissivity.value
         out.append(Exchange("floor", floor, _drink_temperature, _below_level, to_drink=True))
         out.append(_dry(cup, serving, films, headspace, "floor", emissivity))
@@ -262,10 +259,13 @@ def _dry(
 ) -> Exchange:
     """A part of the inside above the level; under a lid it feeds drink, headspace and lid."""
 
+    @lru_cache(maxsize=KEPT)
+    def above(level: float) -> Mapping[str, Film]:
+        return edges.dry_films(cup, serving, level, emissivity)
+
+    @lru_cache(maxsize=KEPT)
     def chosen(drink: Lumped) -> Mapping[str, Film]:
-        if drink.lidded:
-            return edges.lidded_films(cup, serving, drink, emissivity)
-        return edges.dry_films(cup, serving, drink.level, emissivity)
+        return edges.lidded_films(cup, serving, drink, emissivity) if drink.lidded else above(drink.level)
 
     around = _surroundings(serving, "dry", films)
     if "dry" in films or headspace is None or not callable(around):

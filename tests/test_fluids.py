@@ -228,3 +228,16 @@ def test_fits_state_their_range() -> None:
     edge = PropsSI("D", "T", high + ZERO_CELSIUS, "Q", 0, "Water")
     assert low == 0.0
     assert fluids.water_density(high) == pytest.approx(edge, rel=1e-4)
+
+
+def test_properties_taken_together_are_those_taken_one_by_one() -> None:
+    """The films ask for all at once; the single functions are those that CoolProp checks."""
+    temperature = np.linspace(5.0, 95.0, 7)
+    single = (fluids.air_conductivity, fluids.air_viscosity, fluids.air_specific_heat)
+    one_by_one = np.array([function(temperature) for function in single])
+    assert np.array(fluids.air_transport(temperature)) == pytest.approx(one_by_one, rel=1e-14)
+    assert fluids.air_transport(50.0) == tuple(function(50.0) for function in single)
+    for liquid in fluids.LIQUIDS.values():
+        names = ("density", "specific_heat", "conductivity", "viscosity", "expansion")
+        expected = np.array([getattr(liquid, name)(temperature) for name in names])
+        assert np.array(liquid.transport(temperature)) == pytest.approx(expected, rel=1e-12)

@@ -6,6 +6,8 @@ import math
 from dataclasses import dataclass, replace
 from typing import ClassVar, Literal
 
+import numpy as np
+
 from cupfem.films import correlations as nu
 from cupfem.films.base import Applied, Values, reached, require_positive, rounded_difference, upward_share
 from cupfem.films.correlations import FluidState
@@ -17,9 +19,16 @@ SMALLEST_BUOYANCY = 1e-5  # what 0.05 K makes in water of 20 degC; rounds the co
 
 def liquid_film(liquid: Liquid, film: Values) -> tuple[FluidState, Values]:
     """The liquid at the film temperature [degC], and its expansion coefficient [1/K]."""
-    density, conductivity = liquid.density(film), liquid.conductivity(film)
-    diffusivity = conductivity / (density * liquid.specific_heat(film))
-    return FluidState(conductivity, liquid.viscosity(film) / density, diffusivity), liquid.expansion(film)
+    if isinstance(film, np.ndarray) and film.ndim == 1:
+        density, specific_heat, conductivity, viscosity, expansion = liquid.transport(film)
+        diffusivity = conductivity / (density * specific_heat)
+        return FluidState(conductivity, viscosity / density, diffusivity), expansion
+    state = FluidState(
+        liquid.conductivity(film),
+        liquid.viscosity(film) / liquid.density(film),
+        liquid.conductivity(film) / (liquid.density(film) * liquid.specific_heat(film)),
+    )
+    return state, liquid.expansion(film)
 
 
 @dataclass(frozen=True)

@@ -20,7 +20,7 @@ from cupfem.films.base import (
     upward_share,
 )
 from cupfem.films.correlations import FluidState
-from cupfem.fluids import STANDARD_PRESSURE, air_conductivity, air_density, air_specific_heat, air_viscosity
+from cupfem.fluids import STANDARD_PRESSURE, air_density, air_transport
 from cupfem.quantities import ZERO_CELSIUS
 
 LARGEST_LEAN = math.radians(60.0)
@@ -30,10 +30,9 @@ LEADING_EDGE = 0.02  # share of the height; see `correlations.leading_edge_shape
 def air_film(surface: Values, surroundings: Values, pressure: float) -> FluidState:
     """Dry air at the film temperature, the mean of surface and surroundings [degC]."""
     film = 0.5 * (surface + surroundings)
+    conductivity, viscosity, specific_heat = air_transport(film)
     density = air_density(film, pressure)
-    conductivity = air_conductivity(film)
-    diffusivity = conductivity / (density * air_specific_heat(film))
-    return FluidState(conductivity, air_viscosity(film) / density, diffusivity)
+    return FluidState(conductivity, viscosity / density, conductivity / (density * specific_heat))
 
 
 def air_buoyancy(surface: Values, surroundings: Values) -> Values:

@@ -10,6 +10,7 @@ from cupfem.fluids.dry_air import (
     air_density,
     air_prandtl,
     air_specific_heat,
+    air_transport,
     air_viscosity,
     standard_pressure,
 )
@@ -45,6 +46,7 @@ __all__ = [
     "air_density",
     "air_prandtl",
     "air_specific_heat",
+    "air_transport",
     "air_viscosity",
     "boiling_point",
     "constant_liquid",

@@ -9,7 +9,9 @@ The largest deviation of each fit stands beside it. All three hardly depend on p
 
 from __future__ import annotations
 
-from cupfem.fluids.polynomial import Coefficients, Value, horner
+import numpy as np
+
+from cupfem.fluids.polynomial import Coefficients, Value, horner, horner_stacked, stacked
 from cupfem.quantities import ZERO_CELSIUS
 
 AIR_RANGE = (-40.0, 150.0)  # degC, of the fits
@@ -24,6 +26,7 @@ CONDUCTIVITY: Coefficients = (0.0243602119, 7.65489655e-5, -4.38852493e-8, 4.330
 VISCOSITY: Coefficients = (1.72181449e-5, 5.01097399e-8, -3.70288911e-11, 3.73338066e-14)
 # J/(kg K); 2e-5
 SPECIFIC_HEAT: Coefficients = (1005.66343, 0.0148730063, 4.09951114e-4)
+_TRANSPORT = stacked(CONDUCTIVITY, VISCOSITY, SPECIFIC_HEAT)
 
 
 def air_density(temperature: Value, pressure: float = STANDARD_PRESSURE) -> Value:
@@ -46,6 +49,14 @@ def air_viscosity(temperature: Value) -> Value:
 def air_specific_heat(temperature: Value) -> Value:
     """Specific heat at constant pressure [J/(kg K)] at a temperature [degC]; fit to Lemmon et al. 2000."""
     return horner(SPECIFIC_HEAT, temperature)
+
+
+def air_transport(temperature: Value) -> tuple[Value, Value, Value]:
+    """Conductivity [W/(m K)], viscosity [Pa s], specific heat [J/(kg K)], as the three functions give."""
+    if isinstance(temperature, np.ndarray) and temperature.ndim == 1:
+        conductivity, viscosity, specific_heat = horner_stacked(_TRANSPORT, temperature)
+        return conductivity, viscosity, specific_heat
+    return air_conductivity(temperature), air_viscosity(temperature), air_specific_heat(temperature)
 
 
 def air_prandtl(temperature: Value) -> Value:

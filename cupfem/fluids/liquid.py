@@ -10,7 +10,17 @@ from typing import Any
 
 from cupfem.errors import InputError, nearest
 from cupfem.fluids import pure_water
-from cupfem.fluids.polynomial import Coefficients, Value, derivative, horner, integral, scaled
+from cupfem.fluids.polynomial import (
+    Array,
+    Coefficients,
+    Value,
+    derivative,
+    horner,
+    horner_stacked,
+    integral,
+    scaled,
+    stacked,
+)
 
 MEMORY = "from memory, not re-checked"
 
@@ -41,6 +51,25 @@ class Liquid:
     @cached_property
     def _buoyant_slope(self) -> Coefficients:
         return derivative(self.buoyant_density)
+
+    @cached_property
+    def _transport(self) -> Array:
+        return stacked(
+            self.density_coefficients,
+            self.specific_heat_coefficients,
+            self.conductivity_coefficients,
+            self.fluidity_coefficients,
+            self.buoyant_density,
+            self._buoyant_slope,
+        )
+
+    def transport(self, temperature: Array) -> tuple[Array, Array, Array, Array, Array]:
+        """Density, specific heat, conductivity, viscosity and expansion at temperatures `[point]`, as the
+        methods below give them one by one."""
+        density, specific_heat, conductivity, fluidity, buoyant, slope = horner_stacked(
+            self._transport, temperature
+        )
+        return density, specific_heat, conductivity, 1.0 / fluidity, -slope / buoyant
 
     def density(self, temperature: Value) -> Value:
         """Density [kg/m3] at a temperature [degC]."""

@@ -25,6 +25,23 @@ def horner(coefficients: Coefficients, x: Value) -> Value:
     return result
 
 
+def stacked(*polynomials: Coefficients) -> Array:
+    """Several polynomials as one table `[power, polynomial]` for `horner_stacked`."""
+    table = np.zeros((max(len(coefficients) for coefficients in polynomials), len(polynomials)))
+    for column, coefficients in enumerate(polynomials):
+        table[: len(coefficients), column] = coefficients
+    return table
+
+
+def horner_stacked(table: Array, x: Array) -> Array:
+    """Values `[polynomial, point]` at points `[point]`: one pass for all is faster than one each."""
+    result = np.repeat(table[-1][:, None], len(x), axis=1)
+    for row in table[-2::-1]:
+        result *= x
+        result += row[:, None]
+    return result
+
+
 def derivative(coefficients: Coefficients) -> Coefficients:
     """Coefficients of the derivative."""
     return tuple(power * c for power, c in enumerate(coefficients))[1:] or (0.0,)
