@@ -1,4 +1,4 @@
-"""Several cups in the same serving, side by side."""
+"""Hold times as rows of a table, and several cups in the same serving side by side."""
 
 from __future__ import annotations
 
@@ -10,16 +10,21 @@ import numpy as np
 from cupfem.drawing import survey
 from cupfem.errors import InputError
 from cupfem.quantities import Units, format_quantity
-from cupfem.run import Run, headline
+from cupfem.run import CAUTION, MOISTURE, Run, headline
 from cupfem.run.touched import told
-from cupfem.touch.holding import Hold, grip_band
+from cupfem.touch.holding import Hold
+from cupfem.touch.verdict import grip_band
 
 MOST = 5
 """Cups that one cup is set against at the most: more columns do not fit a page."""
+ASKED = 30.0
+"""Hold time [s] that is asked for where neither a command nor a target says one: from counter to table."""
 COARSE = 0.5
 """Fineness of the survey for the mass: volumes of a mesh do not depend on it."""
 PICK_UPS = (10.0, 60.0, 240.0)
 """Pick-ups [s] whose hold times stand in the table."""
+ROWS, COLUMNS = 10, 6
+"""Heights and pick-ups of the table on a terminal; `hold.csv` has all."""
 
 
 @dataclass(frozen=True)
@@ -81,6 +86,62 @@ def in_grip(hold: Hold, pick_up: float) -> str:
     at_least = float(hold.times.at_least[row, inside].max())
     thin, thick = (float(times[row, inside].min()) for times in (hold.times.thin, hold.times.thick))
     return f"{told(thin, at_least)} to {told(thick, at_least)}"
+
+
+def hold_heads(hold: Hold, units: Units) -> list[str]:
+    """Heads of the table of hold times: the height and the pick-ups that are shown."""
+    return ["height", *(f"{hold.pick_ups[p]:g} s" for p in _spaced(len(hold.pick_ups), COLUMNS))]
+
+
+def hold_rows(hold: Hold, units: Units) -> list[list[str]]:
+    """Rows of the table from the brim down: hold times, thin to thick skin, of some heights and pick-ups."""
+    rows = []
+    for h in _spaced(len(hold.heights), ROWS)[::-1]:
+        mark = "*" if hold.solved[h] else "~" if hold.near_end[h] else ""
+        height = format_quantity(float(hold.heights[h]), "length", units) + mark
+        rows.append([height, *(_cell(hold, p, h) for p in _spaced(len(hold.pick_ups), COLUMNS))])
+    return rows
+
+
+def hold_answers(hold: Hold, asked: float, units: Units) -> list[tuple[str, str]]:
+    """What the map says: the band that cannot be held, the first comfortable moment, the worst place."""
+    return [
+        *_bands(hold, asked, units),
+        (f"grip band can be held {asked:g} s from", _first(Candidate(hold.run, hold), asked)),
+        *hold.figures().rows(),
+    ]
+
+
+def hold_grounds(hold: Hold) -> list[str]:
+    """What the hold times rest on: the notes of the map without what stands elsewhere."""
+    told_elsewhere = {f"{name.strip()}: {value}" for name, value in hold.figures().rows()}
+    return [note for note in hold.notes() if note not in {*told_elsewhere, CAUTION, f"model: {MOISTURE}"}]
+
+
+def _bands(hold: Hold, asked: float, units: Units) -> list[tuple[str, str]]:
+    """The band that cannot be held, with one row for pick-ups that share it."""
+    rows: list[tuple[str, str]] = []
+    for pick_up, band in zip(hold.pick_ups, hold.band_not_held(asked), strict=True):
+        ends = [] if band is None else [format_quantity(end, "length", units) for end in band[1:]]
+        shown = "none" if band is None else " to ".join(ends)
+        if not rows or rows[-1][1] != shown:
+            rows.append((f"cannot be held {asked:g} s, picked up from {pick_up:g} s on", shown))
+    return rows
+
+
+def _cell(hold: Hold, p: int, h: int) -> str:
+    times = hold.times
+    bound = float(times.at_least[p, h])
+    thin, thick = (
+        f"{time:.3g}" if np.isfinite(time) else f">{bound:.3g}"
+        for time in (times.thin[p, h], times.thick[p, h])
+    )
+    return thin if thin == thick else f"{thin}..{thick}"
+
+
+def _spaced(count: int, most: int) -> list[int]:
+    """At most `most` of `count` places, evenly spread, with the first and the last."""
+    return sorted({round(place) for place in np.linspace(0, count - 1, min(count, most))})
 
 
 def _headlines(first: Candidate, units: Units) -> list[tuple[str, Callable[[Candidate], str]]]:

@@ -60,7 +60,9 @@ def test_pour_prints_and_writes(capsys):
 def test_pour_says_what_its_figures_are(capsys):
     _, out, _ = command("pour", CUP, *SHORT, capsys=capsys)
     words = " ".join(out.split())
-    assert "free-wall figures, not a hold time" in words
+    assert "free-wall figures, not a hold time" not in words  # a verdict of touch stands beside them
+    assert "can be held, " in words
+    assert " (thin skin, " in words
     assert CAUTION in words
     assert "numerical: time" in words
     assert "model: board moisture not modelled" in words
@@ -145,9 +147,17 @@ def test_help_explains_the_words():
     runner = CliRunner()
     shown = runner.invoke(app, ["--help"])
     assert shown.exit_code == 0
-    for word in ("cup file", "serving file", "film coefficient", "free wall", "sleeve", "Example"):
+    for word in (
+        "cup file",
+        "serving file",
+        "film coefficient",
+        "free wall",
+        "hold time",
+        "sleeve",
+        "Example",
+    ):
         assert word in shown.output
-    for name in ("draw", "pour", "materials"):
+    for name in ("draw", "pour", "hold", "materials"):
         one = runner.invoke(app, [name, "--help"])
         assert one.exit_code == 0
         assert "--units" in one.output

@@ -116,7 +116,8 @@ def test_figures_and_verdict_are_the_run_s(run, page):
     assert "The cup misses 1 of 2 targets." in top
     for verdict in headline.verdicts(run):
         assert words(headline.verdict_line(verdict)) in top
-    assert FREE_WALL in top
+    assert FREE_WALL not in top  # a verdict of touch stands there
+    assert f"picked up {run.touch.pick_up:.3g} s after the pour" in top
 
 
 def test_verdict_sentences(run):

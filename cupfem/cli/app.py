@@ -17,6 +17,9 @@ WORDS = {
     "film coefficient": "heat flux through the air or the drink at a surface, per kelvin",
     "station": "a height at which a series in time is kept",
     "free wall": "the outer wall where no finger touches it: its temperature is not a hold time",
+    "hold time": "how long a finger pad can stay until pain, or the published limit for its surface",
+    "grip band": "where a cup is gripped: between the target's heights, or the middle of the wall",
+    "pick-up": "moment after the pour at which the finger touches",
 }
 GLOSSARY = "\n\n".join(
     ["[bold]Words[/bold]", *(f"[bold]{word}[/bold]: {meaning}" for word, meaning in WORDS.items())]
@@ -32,13 +35,24 @@ Quiet = Annotated[bool, typer.Option("--quiet", help="Print nothing but the name
 Fineness = Annotated[
     float, typer.Option(metavar="NUMBER", help="Cells per length relative to the default, 0.25 to 16.")
 ]
+ServingFile = Annotated[
+    str | None, typer.Argument(metavar="SERVING", help="Serving file; left out: the default serving.")
+]
+Duration = Annotated[
+    str | None, typer.Option(metavar="TIME", help='Instead of the serving\'s, such as "5 min".')
+]
+Report = Annotated[bool, typer.Option("--report", help="Add report.html, one page that can be handed on.")]
+Against = Annotated[
+    list[str] | None,
+    typer.Option(metavar="CUP", help="A further cup to set beside, in the same serving; up to five times."),
+]
 UnitSystem = Annotated[
     Literal["si", "us"], typer.Option(help="us: degF, inches, fluid ounces in tables and pictures.")
 ]
 
 app = typer.Typer(
     name="cupfem",
-    help="From a cup's drawing: how hot its outside gets, how warm the drink stays, where the heat goes.",
+    help="From a cup's drawing: how long it can be held, how warm the drink stays, where the heat goes.",
     epilog=f"{GLOSSARY}\n\n[bold]Example[/bold]: {EXAMPLE}",
     add_completion=False,
     rich_markup_mode="rich",
@@ -80,20 +94,15 @@ def draw(
 @app.command(epilog='Example: cupfem pour geometries/double_wall.toml --duration "5 min"')
 def pour(
     cup: CupFile,
-    serving: Annotated[
-        str | None, typer.Argument(metavar="SERVING", help="Serving file; left out: the default serving.")
-    ] = None,
+    serving: ServingFile = None,
     out: Out = None,
     force: Force = False,
     quiet: Quiet = False,
-    duration: Annotated[
-        str | None, typer.Option(metavar="TIME", help='Instead of the serving\'s, such as "5 min".')
-    ] = None,
+    duration: Duration = None,
     fineness: Fineness = 1.0,
     units: UnitSystem = "si",
-    report: Annotated[
-        bool, typer.Option("--report", help="Add report.html, one page that can be handed on.")
-    ] = False,
+    report: Report = False,
+    against: Against = None,
 ) -> None:
     """Run a serving: verdict, table, pictures, series and fields, in one folder."""
     from cupfem.cli.jobs import pour_cup
@@ -108,6 +117,44 @@ def pour(
         fineness=fineness,
         units=units,
         report=report,
+        against=against or (),
+    )
+
+
+@app.command(epilog="Example: cupfem hold geometries/double_wall.toml --against geometries/single_board.toml")
+def hold(
+    cup: CupFile,
+    serving: ServingFile = None,
+    out: Out = None,
+    force: Force = False,
+    quiet: Quiet = False,
+    asked: Annotated[
+        str | None,
+        typer.Option(metavar="TIME", help="Hold time to judge by; left out: the target's, or 30 s."),
+    ] = None,
+    longest: Annotated[str, typer.Option(metavar="TIME", help="Longest hold that is tried.")] = "5 min",
+    duration: Duration = None,
+    fineness: Fineness = 1.0,
+    units: UnitSystem = "si",
+    report: Report = False,
+    against: Against = None,
+) -> None:
+    """Where and how long it can be held: hold time against height and pick-up, and what cannot be held."""
+    from cupfem.cli.jobs import hold_cup
+
+    hold_cup(
+        cup,
+        serving,
+        out,
+        force=force,
+        quiet=quiet,
+        asked=asked,
+        longest=longest,
+        duration=duration,
+        fineness=fineness,
+        units=units,
+        report=report,
+        against=against or (),
     )
 
 

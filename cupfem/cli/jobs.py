@@ -1,4 +1,4 @@
-"""What the commands `draw` and `pour` do."""
+"""What the commands `draw`, `pour` and `hold` do."""
 
 from __future__ import annotations
 
@@ -6,26 +6,29 @@ import csv
 import json
 import sys
 import time
-from collections.abc import Callable, Iterator
+from collections.abc import Callable, Iterator, Sequence
 from contextlib import contextmanager
 from pathlib import Path
 
 from rich.console import Console
 from rich.progress import BarColumn, Progress, TaskProgressColumn, TextColumn
 
-from cupfem.cli.show import show_drawing, show_folder, show_run
+from cupfem.against import Candidate, check_number
+from cupfem.cli.outcome import asked_of, brief_map, write_pictures
+from cupfem.cli.show import show_against, show_drawing, show_folder, show_hold, show_run
 from cupfem.cup import Cup, load_cup
 from cupfem.drawing import Drawing, survey
 from cupfem.errors import ConvergenceError
 from cupfem.exchange import check_place, write_incomplete, write_run
 from cupfem.exchange.place import write_numbered, write_whole
+from cupfem.hold import hold
 from cupfem.inputs import resolved_toml
 from cupfem.pour import pour
 from cupfem.quantities import Units
 from cupfem.run import Run
 from cupfem.serving import Serving, load_serving
 
-COMMAND = "pour"
+COMMAND, HOLD = "pour", "hold"
 
 
 def draw_cup(path: str, out: str | None, *, force: bool, quiet: bool, fineness: float, units: Units) -> None:
@@ -72,23 +75,73 @@ def pour_cup(
     fineness: float,
     units: Units,
     report: bool,
+    against: Sequence[str],
 ) -> None:
-    """Run a serving, write its folder, print the headline figures."""
+    """Run a serving, write its folder, print the headline figures; beside other cups if there are any."""
     started = time.perf_counter()
-    cup, serving = load_cup(path), _serving(serving_path, duration)
+    check_number(against)
+    cups, serving = [load_cup(each) for each in (path, *against)], serving_of(serving_path, duration)
     if out is not None:
         check_place(out, force)
     loaded = time.perf_counter()
-    run = _run(cup, serving, fineness, out, quiet)
-    timings = {"load": loaded - started, "run": time.perf_counter() - loaded}
-    folder = write_run(run, out, name=COMMAND, force=force, figures=_pictures(units, report), timings=timings)
+    candidates = [Candidate(run_of(cup, serving, fineness, out, quiet, COMMAND)) for cup in cups]
+    poured = time.perf_counter()
+    if report:
+        candidates = [Candidate(each.run, brief_map(each.run)) for each in candidates]
+    timings = {"load": loaded - started, "run": poured - loaded, "hold": time.perf_counter() - poured}
+    asked = asked_of(serving)
+
+    def pictures(_: Run, place: Path) -> None:
+        write_pictures(candidates, place, asked, units, report)
+
+    folder = write_run(candidates[0].run, out, name=COMMAND, force=force, figures=pictures, timings=timings)
     console = Console(highlight=False)
     if not quiet:
-        show_run(console, run, units)
+        show_run(console, candidates[0].run, units)
+        show_against(console, candidates, asked, units)
     show_folder(console, folder, quiet)
 
 
-def _serving(path: str | None, duration: str | None) -> Serving:
+def hold_cup(
+    path: str,
+    serving_path: str | None,
+    out: str | None,
+    *,
+    against: Sequence[str],
+    asked: str | None,
+    longest: str,
+    force: bool,
+    quiet: bool,
+    duration: str | None,
+    fineness: float,
+    units: Units,
+    report: bool,
+) -> None:
+    """Run a serving, map its hold times, write the folder, print what can be held."""
+    started = time.perf_counter()
+    check_number(against)
+    cups, serving = [load_cup(each) for each in (path, *against)], serving_of(serving_path, duration)
+    seconds = asked_of(serving, asked)
+    if out is not None:
+        check_place(out, force)
+    loaded = time.perf_counter()
+    runs = [run_of(cup, serving, fineness, out, quiet, HOLD) for cup in cups]
+    poured = time.perf_counter()
+    candidates = [Candidate(run, hold(run, longest=longest)) for run in runs]
+    timings = {"load": loaded - started, "run": poured - loaded, "hold": time.perf_counter() - poured}
+
+    def pictures(_: Run, place: Path) -> None:
+        write_pictures(candidates, place, seconds, units, report)
+
+    folder = write_run(runs[0], out, name=HOLD, force=force, figures=pictures, timings=timings)
+    console = Console(highlight=False)
+    if not quiet:
+        show_hold(console, candidates[0], seconds, units)
+        show_against(console, candidates, seconds, units)
+    show_folder(console, folder, quiet)
+
+
+def serving_of(path: str | None, duration: str | None) -> Serving:
     """The serving with another duration, if one is given; checked as if its file had said so."""
     serving = Serving() if path is None else load_serving(path)
     if duration is None:
@@ -97,26 +150,14 @@ def _serving(path: str | None, duration: str | None) -> Serving:
     return Serving(**{**given, "duration": duration})
 
 
-def _run(cup: Cup, serving: Serving, fineness: float, out: str | None, quiet: bool) -> Run:
+def run_of(cup: Cup, serving: Serving, fineness: float, out: str | None, quiet: bool, name: str) -> Run:
+    """The run; one that cannot go on leaves the inputs in a folder of its own."""
     try:
         with _progress(serving.duration, quiet) as tell:
             return pour(cup, serving, fineness=fineness, progress=tell)
     except ConvergenceError as error:
-        folder = write_incomplete(cup, serving, error, out, name=COMMAND)
+        folder = write_incomplete(cup, serving, error, out, name=name)
         raise ConvergenceError(f"{error}; the inputs are in {folder}") from error
-
-
-def _pictures(units: Units, report: bool) -> Callable[[Run, Path], None]:
-    from cupfem.figures import write_figures
-
-    def write(run: Run, place: Path) -> None:
-        write_figures(run, place, units)
-        if report:
-            from cupfem.report import write_report
-
-            write_report(run, place / "report.html", units)
-
-    return write
 
 
 @contextmanager

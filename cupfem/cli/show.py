@@ -9,6 +9,7 @@ from rich.console import Console
 from rich.markup import escape
 from rich.table import Table
 
+from cupfem.against import Candidate, hold_answers, hold_grounds, hold_heads, hold_rows, side_by_side
 from cupfem.drawing import Drawing
 from cupfem.quantities import Units
 from cupfem.run import CAUTION, FREE_WALL, Run, headline
@@ -17,7 +18,9 @@ from cupfem.run import CAUTION, FREE_WALL, Run, headline
 def show_run(console: Console, run: Run, units: Units) -> None:
     """Headline figures, verdict, the two uncertainties apart, defaults and the caution."""
     console.print(f"[bold]{escape(run.cup.title)} - {escape(run.serving.title)}[/bold]")
-    console.print(f"[italic]{FREE_WALL}[/italic]\n")
+    if run.touch is None:
+        console.print(f"[italic]{FREE_WALL}[/italic]")
+    console.print()
     console.print(_table(headline.rows(run, run.figures(), units)))
     for verdict in headline.verdicts(run):
         colour = "green" if verdict.passed else "red"
@@ -26,6 +29,31 @@ def show_run(console: Console, run: Run, units: Units) -> None:
     _section(console, "Correlations and their ranges", run.ranges)
     _section(console, "Defaults used", ["; ".join(run.defaults)] if run.defaults else [])
     console.print(f"\n[bold]Caution[/bold]\n{CAUTION}")
+
+
+def show_hold(console: Console, candidate: Candidate, asked: float, units: Units) -> None:
+    """What can be held: a part of the map, the band that cannot, the first comfortable moment, notes."""
+    run, hold = candidate.run, candidate.hold
+    assert hold is not None
+    console.print(f"[bold]{escape(run.cup.title)} - {escape(run.serving.title)}[/bold]\n")
+    console.print("[bold]Hold time in s, thin to thick skin, by height and pick-up[/bold]")
+    console.print(_table(hold_rows(hold, units), hold_heads(hold, units)))
+    console.print()
+    console.print(_table(hold_answers(hold, asked, units)))
+    for verdict in headline.verdicts(run):
+        colour = "green" if verdict.passed else "red"
+        console.print(f"[bold {colour}]{escape(headline.verdict_line(verdict, units))}[/bold {colour}]")
+    _section(console, "Rests on", [*hold_grounds(hold), *headline.uncertainty_lines(run)])
+    console.print(f"\n[bold]Caution[/bold]\n{CAUTION}")
+
+
+def show_against(console: Console, candidates: Sequence[Candidate], asked: float, units: Units) -> None:
+    """The cups side by side; nothing for one alone."""
+    if len(candidates) < 2:
+        return
+    console.print("\n[bold]Side by side[/bold]")
+    heads = ["", *(each.title for each in candidates)]
+    console.print(_table([(what, *cells) for what, cells in side_by_side(candidates, asked, units)], heads))
 
 
 def show_drawing(console: Console, drawing: Drawing, units: Units) -> None:

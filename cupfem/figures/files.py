@@ -10,12 +10,14 @@ from matplotlib.figure import Figure
 
 from cupfem.figures.field import field_figure
 from cupfem.figures.heat import drink_figure, heat_figure
+from cupfem.figures.hold import hold_figure
 from cupfem.figures.section import Drawn, section_figure
-from cupfem.figures.wall import wall_history, wall_profile
+from cupfem.figures.wall import wall_history, wall_map, wall_profile
 from cupfem.quantities import Units
 from cupfem.run import Run
+from cupfem.touch.holding import Hold
 
-DPI = 130
+DPI = 110
 COMPRESSION = 3
 """Of PNG: the default of 6 takes three times as long for a tenth less."""
 
@@ -25,19 +27,25 @@ PICTURES: Mapping[str, Picture] = {
     "field": lambda run, units: field_figure(run, units=units),
     "wall_history": lambda run, units: wall_history(run, units=units),
     "wall_profile": lambda run, units: wall_profile(run, units=units),
+    "wall_map": lambda run, units: wall_map(run, units=units),
     "drink": lambda run, units: drink_figure(run, units),
     "heat": lambda run, units: heat_figure(run, units),
 }
 """File name without its ending -> the picture."""
 
 
-def write_figures(run: Run, folder: str | Path, units: Units = "si") -> list[Path]:
-    """Write all pictures of a run as PNG into a folder that exists; returns their paths."""
-    paths = []
+def write_figures(
+    run: Run, folder: str | Path, units: Units = "si", *, hold: Hold | None = None, asked: float = 30.0
+) -> dict[str, Path]:
+    """Write all pictures of a run as PNG into a folder that exists, and with `hold` that of hold times.
+
+    `asked` is the hold time [s] that is marked. Returns the paths by the names of the pictures.
+    """
+    paths = {name: Path(folder) / f"{name}.png" for name in (*PICTURES, *(["hold"] if hold else []))}
     for name, picture in PICTURES.items():
-        path = Path(folder) / f"{name}.png"
-        path.write_bytes(png(picture(run, units)))
-        paths.append(path)
+        paths[name].write_bytes(png(picture(run, units)))
+    if hold is not None:
+        paths["hold"].write_bytes(png(hold_figure(hold, asked, units)))
     return paths
 
 

@@ -11,7 +11,8 @@ from numpy.typing import NDArray
 
 from cupfem.figures import style
 from cupfem.quantities import Units
-from cupfem.touch.holding import Hold, grip_band
+from cupfem.touch.holding import Hold
+from cupfem.touch.verdict import grip_band
 
 Floats = NDArray[np.float64]
 
@@ -47,7 +48,7 @@ def known(hold: Hold, thick_skin: bool = False) -> Floats:
 def in_grip_band(hold: Hold) -> NDArray[np.bool_]:
     """`[h]` the heights of the grip band, or the one nearest to its middle."""
     low, high = grip_band(hold.run)
-    inside = (hold.heights >= low - 1e-9) & (hold.heights <= high + 1e-9)
+    inside = np.asarray((hold.heights >= low - 1e-9) & (hold.heights <= high + 1e-9))
     if not inside.any():
         inside[np.argmin(np.abs(hold.heights - 0.5 * (low + high)))] = True
     return inside
@@ -77,9 +78,7 @@ def _against_height(axes: Axes, hold: Hold, asked: float, units: Units) -> None:
         0.01, high, " grip band", size=style.SMALL, color=style.QUIET, va="bottom", ha="left",
         transform=axes.get_yaxis_transform(),
     )  # fmt: skip
-    style.label_axes(
-        axes, "hold time", f"height of the pad's middle [{style.unit_sign('length', units)}]"
-    )
+    style.label_axes(axes, "hold time", f"height of the pad's middle [{style.unit_sign('length', units)}]")
     axes.legend(loc="lower left", bbox_to_anchor=(0.0, 1.0), ncols=len(rows), frameon=False,
                 fontsize=style.SMALL, borderaxespad=0.1, columnspacing=1.2)  # fmt: skip
 
@@ -91,7 +90,7 @@ def _against_pick_up(axes: Axes, hold: Hold, asked: float, units: Units) -> None
     thin, thick = (known(hold, skin)[:, chosen].min(axis=1) for skin in (False, True))
     axes.fill_between(hold.pick_ups, thin, thick, color=style.DRINK, alpha=0.18, linewidth=0)
     axes.plot(hold.pick_ups, thin, "o-", color=style.DRINK, linewidth=2.0, markersize=3.5)
-    _mark_open(axes, hold.pick_ups, thin, ~np.isfinite(hold.times.thin[:, chosen]).any(axis=1))
+    _mark_open(axes, hold.pick_ups, thin, ~np.asarray(np.isfinite(hold.times.thin[:, chosen]).any(axis=1)))
     everywhere = known(hold).min(axis=1)
     apart = bool((everywhere < APART * thin).any())
     if apart:
@@ -107,7 +106,9 @@ def _against_pick_up(axes: Axes, hold: Hold, asked: float, units: Units) -> None
 
 
 def _mark_open(axes: Axes, pick_ups: Floats, values: Floats, open_ended: NDArray[np.bool_]) -> None:
-    axes.plot(pick_ups[open_ended], values[open_ended], "^", color=style.DRINK, fillstyle="none", markersize=8)
+    axes.plot(
+        pick_ups[open_ended], values[open_ended], "^", color=style.DRINK, fillstyle="none", markersize=8
+    )
 
 
 def _beside(axes: Axes, pick_ups: Floats, values: Floats, text: str, colour: str) -> None:

@@ -2,10 +2,12 @@
 
 from __future__ import annotations
 
+from collections.abc import Mapping, Sequence
 from pathlib import Path
 
 from jinja2 import Environment, PackageLoader, StrictUndefined
 
+from cupfem.against import ASKED, Candidate
 from cupfem.quantities import Units
 from cupfem.report.content import content
 from cupfem.run import Run
@@ -13,14 +15,39 @@ from cupfem.run import Run
 TEMPLATE = "report.html"
 
 
-def write_report(run: Run, path: str | Path, units: Units = "si") -> Path:
-    """Write the page of a run; returns its path. A second call writes the same bytes."""
+def write_report(
+    run: Run,
+    path: str | Path,
+    units: Units = "si",
+    *,
+    candidates: Sequence[Candidate] = (),
+    asked: float = ASKED,
+    drawn: Mapping[str, Path] | None = None,
+) -> Path:
+    """Write the page of a run; returns its path. A second call writes the same bytes.
+
+    Parameters
+    ----------
+    candidates:
+        The run with its map of hold times, and further cups to set beside it; the first is that of `run`.
+    asked:
+        Hold time [s] to judge by.
+    drawn:
+        Pictures that `write_figures` has written, which are then not drawn again.
+    """
     place = Path(path)
-    place.write_text(render(run, units), encoding="utf-8")
+    place.write_text(render(run, units, candidates=candidates, asked=asked, drawn=drawn), encoding="utf-8")
     return place
 
 
-def render(run: Run, units: Units = "si") -> str:
+def render(
+    run: Run,
+    units: Units = "si",
+    *,
+    candidates: Sequence[Candidate] = (),
+    asked: float = ASKED,
+    drawn: Mapping[str, Path] | None = None,
+) -> str:
     """The page of a run as HTML with everything in it: no other file and no network is needed."""
     environment = Environment(
         loader=PackageLoader("cupfem.report"),
@@ -29,4 +56,5 @@ def render(run: Run, units: Units = "si") -> str:
         trim_blocks=True,
         lstrip_blocks=True,
     )
-    return environment.get_template(TEMPLATE).render(content(run, units))
+    values = content(candidates or [Candidate(run)], asked, units, drawn)
+    return environment.get_template(TEMPLATE).render(values)
