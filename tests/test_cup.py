@@ -6,7 +6,7 @@ import tomllib
 from pathlib import Path
 
 import pytest
-from shipped import CUPS
+from shipped import CUPS, SLEEVES
 
 from cupfem.cup import Cup, Layer, Outline, cup_schema, load_cup
 from cupfem.errors import InputError
@@ -48,9 +48,24 @@ def test_every_cup_of_the_project_is_one(path):
     assert "Invented for the demo" in path.read_text(encoding="utf-8")
 
 
-def test_there_is_a_cup_for_each_build():
-    builds = {"double_wall", "double_wall_sleeve", "foam", "polypropylene", "single_board", "stoneware_mug"}
-    assert {path.stem for path in CUPS} == builds
+def test_there_is_a_cup_for_each_family():
+    """Straight and bent insides, every kind of layer, sleeves, a second cup, one by grammage."""
+    cups = [load_cup(path) for path in CUPS]
+    layers = [layer for cup in cups for layer in cup.layer]
+    assert len(cups) >= 16
+    assert len(SLEEVES) >= 4
+    for key in ("ridge", "flute", "strut", "grammage", "thickness_along", "fit", "fit_gap", "pressure"):
+        assert any(getattr(layer, key) for layer in layers), key
+    for key in ("inner_emissivity", "outer_emissivity"):
+        assert any(getattr(layer, key) is not None for layer in layers), key
+    assert {cup.outline.inner_curve for cup in cups if cup.outline.inner_profile} == {"straight", "spline"}
+
+
+@pytest.mark.parametrize("path", SLEEVES, ids=lambda path: path.stem)
+def test_every_sleeve_of_the_project_goes_on_a_cup(path):
+    worn = load_cup(ROOT / "geometries" / "single_board.toml").wearing(path)
+    assert len(worn.layer) > 2
+    assert "Invented for the demo" in path.read_text(encoding="utf-8")
 
 
 def test_lengths_are_metres():

@@ -15,6 +15,11 @@ from cupfem import meridian
 from cupfem.axisymmetry import EdgeQuadrature, Measure, volume_moments
 from cupfem.mesh import build
 
+STRAIGHT = [
+    cup
+    for cup in map(cupfem.load_cup, CUPS)
+    if not cup.outline.inner_profile and not cup.layer[0].thickness_along
+]
 WHOLE_EDGES = ("inside", "outside", "heel", "brim", "floor", "underside", "skirt")
 
 
@@ -77,6 +82,8 @@ class TestShippedCups:
         named = np.concatenate([mesh.edges[name] for name in WHOLE_EDGES if name in mesh.edges], axis=1)
         facets = {tuple(sorted(pair)) for pair in named[:2].T}
         assert len(facets) == named.shape[1]
+        for contact in mesh.contacts:
+            facets |= {tuple(sorted(pair)) for face in (contact.inner, contact.outer) for pair in face[:2].T}
         rest = [pair for pair in boundary_of(mesh) if pair not in facets]
         assert facets <= boundary_of(mesh)
         for pair in rest:
@@ -92,6 +99,19 @@ class TestShippedCups:
         for edge in ("inside", "outside"):
             parts = [area(mesh, name) for name in mesh.edges if name.startswith(f"{edge}.")]
             assert sum(parts) == pytest.approx(area(mesh, edge), rel=1e-12)
+
+
+class TestStraightCups:
+    """Closed forms of straight walls: the shipped cups whose inside is one cone and whose innermost layer
+    is even."""
+
+    @pytest.fixture(params=STRAIGHT, ids=lambda cup: cup.title)
+    def cup(self, request):
+        return request.param
+
+    @pytest.fixture
+    def mesh(self, cup):
+        return build(meridian.build(cup))
 
     def test_inside_and_base(self, cup, mesh):
         """Straight faces: areas of inside, skirt, floor and underside, and the volume of the base."""
@@ -138,8 +158,8 @@ def boundary_of(mesh):
 def inside_the_wall(cup, mesh, pair):
     """Whether a facet's middle lies within the wall's outline, away from its faces and ends."""
     s, n = mesh.wall_coordinates[:, list(pair)].mean(axis=1)
-    length = np.hypot(cup.height, cup.inner_radius(cup.height) - cup.inner_radius(0.0))
-    height = s / length * cup.height
+    profile = cup.profile
+    height = np.interp(s, profile.arc_length_at(profile.height), profile.height)
     return 0.0 < height < cup.height and 0.0 < n < float(meridian.build(cup).outer_offset_at(height))
 
 

@@ -76,7 +76,8 @@ class Sleeve(InputFile):
             why = f"with its lower end there the sleeve overlaps the cup by {_mm(-min(gap))}"
             instead = "leave bottom out: the sleeve then stands where it grips"
             raise refused(why, instead, "sleeve.bottom", _mm(low))
-        return tuple(self._layer(index, low, min(high, cup.height), gap) for index in range(len(self.layer)))
+        ends = _rounded(low), _rounded(min(high, cup.height))
+        return tuple(self._layer(index, *ends, gap) for index in range(len(self.layer)))
 
     def _layer(self, index: int, low: float, high: float, gap: tuple[float, float] | None) -> Layer:
         """A layer of the cup at the place of the sleeve; values are SI already."""
@@ -87,7 +88,7 @@ class Sleeve(InputFile):
         if index == 0 and self.fit is not None:
             given["fit"] = self.fit
             if gap is not None:
-                given["fit_gap"] = tuple(max(end, 0.0) for end in gap)
+                given["fit_gap"] = tuple(_rounded(max(end, 0.0)) for end in gap)
         fields = Layer.model_fields.items()
         defaults = {name: field.get_default(call_default_factory=True) for name, field in fields}
         return Layer.model_construct(_fields_set=set(given), **{**defaults, **given})
@@ -184,13 +185,20 @@ def _raised_heights(layer: SleeveLayer, low: float) -> dict[str, Any]:
     """Heights of a sleeve count from its lower end."""
     raised: dict[str, Any] = {}
     if layer.thickness_along:
-        raised["thickness_along"] = tuple((low + height, value) for height, value in layer.thickness_along)
+        raised["thickness_along"] = tuple(
+            (_rounded(low + height), value) for height, value in layer.thickness_along
+        )
     if layer.ridge is not None:
         ridge = layer.ridge
-        at = tuple(low + height for height in ridge.at)
-        first = None if ridge.first is None else low + ridge.first
+        at = tuple(_rounded(low + height) for height in ridge.at)
+        first = None if ridge.first is None else _rounded(low + ridge.first)
         raised["ridge"] = ridge.model_copy(update={"at": at, "first": first})
     return raised
+
+
+def _rounded(length: float) -> float:
+    """A length to the picometre, which a file holds exactly."""
+    return round(length, 12)
 
 
 def _mm(length: float) -> str:

@@ -216,8 +216,9 @@ class Assembler:
             edges["floor"] = np.array([self.base_grid[:-1, -1], self.base_grid[1:, -1]])[::-1, ::-1]
             edges["underside"] = np.array([self.base_grid[:-1, 0], self.base_grid[1:, 0]])[::-1, ::-1]
         edges["heel"], edges["brim"] = self._end(0), self._end(last)
-        hidden = [pairs for inner, outer, _ in self._contact_pairs() for pairs in (inner, outer)]
-        taken = facet_of.indices(np.concatenate([*edges.values(), self._slits(), *hidden], axis=1))
+        hidden = [pairs for inner, outer, _ in self._contact_pairs(facet_of) for pairs in (inner, outer)]
+        slits = facet_of.existing(self._slits())
+        taken = facet_of.indices(np.concatenate([*edges.values(), slits, *hidden], axis=1))
         rest = np.setdiff1d(grid.boundary_facets(), taken)
         outside = grid.facets[:, rest]
         outside = outside[:, (self.vertices[0, outside] > 1e-12).any(axis=0)]
@@ -281,23 +282,28 @@ class Assembler:
             for name in wanted
         }
 
-    def _contact_pairs(self) -> list[tuple[Ints, Ints, float | Floats]]:
+    def _contact_pairs(self, facet_of: _FacetIndex) -> list[tuple[Ints, Ints, float | Floats]]:
         """Pairs of vertices of the facets inside and outside of each contact, and its conductance."""
+        wall = self.wall
         found: list[tuple[Ints, Ints, float | Floats]] = []
-        middle = 0.5 * (self.wall.z[:-1] + self.wall.z[1:])
-        for index, layer in enumerate(self.wall.meridian.layers):
-            inside, start, stop = (
-                self.wall.line_inside(index),
-                int(self.wall.first_line[index]),
-                int(self.wall.last_line[index]),
-            )
-            apart = self.wall.keeps_apart(index)
-            closed = np.flatnonzero(apart[:-1] & apart[1:])
-            found.append((*self._facing(closed, inside, stop), layer.closing_conductance))
+        middle = 0.5 * (wall.z[:-1] + wall.z[1:])
+        for index, layer in enumerate(wall.meridian.layers):
+            inside, start, stop = wall.line_inside(index), wall.first_line[index], wall.last_line[index]
+            apart = wall.keeps_apart(index)
+            i = self._touching(np.flatnonzero(apart[:-1] & apart[1:]), inside, int(stop), facet_of)
+            found.append((*self._facing(i, inside, int(stop)), layer.closing_conductance))
             if index and layer.loose:
-                i = np.flatnonzero(self.wall.present[index])
-                found.append((*self._facing(i, inside, start), layer.inner_conductance_at(middle[i])))
+                i = self._touching(np.flatnonzero(wall.present[index]), inside, int(start), facet_of)
+                conductance = layer.inner_conductance_at(middle[i])
+                found.append((*self._facing(i, inside, int(start)), conductance))
         return [contact for contact in found if contact[0].shape[1]]
+
+    def _touching(self, intervals: Ints, inner: int, outer: int, facet_of: _FacetIndex) -> Ints:
+        """The intervals at which two lines are faces that lie on each other: not where one spans a step."""
+        faces = self._facing(intervals, inner, outer)
+        both = facet_of.are_facets(faces[0]) & facet_of.are_facets(faces[1])
+        distance = np.abs(self.vertices[:, faces[0]] - self.vertices[:, faces[1]]).max(axis=(0, 1))
+        return np.asarray(intervals[both & (distance < 1e-9)])
 
     def _facing(self, intervals: Ints, inner: int, outer: int) -> tuple[Ints, Ints]:
         v, i = self.vertex, intervals
@@ -306,7 +312,7 @@ class Assembler:
     def _contacts(self, facet_of: _FacetIndex) -> tuple[Contact, ...]:
         return tuple(
             Contact(facet_of(inner), facet_of(outer), conductance)
-            for inner, outer, conductance in self._contact_pairs()
+            for inner, outer, conductance in self._contact_pairs(facet_of)
         )
 
 
@@ -321,15 +327,27 @@ class _FacetIndex:
         self._codes = codes[self._order]
         self._rank, self._facet_dofs, self._degree = rank, facet_dofs, order
 
+    def existing(self, pairs: Ints) -> Ints:
+        """The pairs that are facets of the mesh."""
+        return pairs[:, self.are_facets(pairs)]
+
+    def are_facets(self, pairs: Ints) -> NDArray[np.bool_]:
+        """Whether each pair is a facet of the mesh."""
+        return self._find(pairs)[1]
+
     def indices(self, pairs: Ints) -> Ints:
-        ends = np.sort(pairs, axis=0).astype(np.int64)
-        codes = ends[0] * self._count + ends[1]
-        place = np.searchsorted(self._codes, codes)
-        if np.any(self._codes[np.minimum(place, len(self._codes) - 1)] != codes):
+        place, found = self._find(pairs)
+        if not found.all():
             raise InputError(
                 "mesh", None, "an edge of the drawing is no edge of the mesh", "report this cup file"
             )
         return np.asarray(self._order[place])
+
+    def _find(self, pairs: Ints) -> tuple[Ints, NDArray[np.bool_]]:
+        ends = np.sort(pairs, axis=0).astype(np.int64)
+        codes = ends[0] * self._count + ends[1]
+        place = np.searchsorted(self._codes, codes)
+        return place, self._codes[np.minimum(place, len(self._codes) - 1)] == codes
 
     def __call__(self, pairs: Ints) -> Ints:
         """Unknowns `[3, facet]` (start, end, middle), `[2, facet]` for linear elements. Vertices come first

@@ -4,8 +4,8 @@ layer."""
 from __future__ import annotations
 
 from dataclasses import dataclass, field
-from itertools import pairwise
 from functools import cached_property
+from itertools import pairwise
 
 import numpy as np
 from numpy.typing import NDArray
