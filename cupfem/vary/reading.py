@@ -54,7 +54,7 @@ class Interaction:
 
 @dataclass(frozen=True)
 class Bar:
-    """A bar of a tornado chart: the figure at the low and at the high value of a factor, and their labels."""
+    """A bar of a tornado chart: a figure at two values of a factor, whose labels tell them."""
 
     key: str
     base: float
@@ -129,16 +129,14 @@ def interactions(outcome: Outcome, key: str) -> list[Interaction]:
 def tornado(outcome: Outcome, key: str) -> list[Bar]:
     """A figure at the low and high value of each factor, the widest bar first.
 
-    From "one at a time" the others are as in the file; from other designs these are means over the others.
+    From "one at a time" the others are as in the file; from other designs these are the lowest and the
+    highest mean over the others.
     """
     if outcome.combine == "one at a time":
         bars = _bars_one_at_a_time(outcome, outcome.figure(key))
     else:
         mean = float(np.nanmean(outcome.figure(key)))
-        bars = [
-            Bar(e.varied.key, mean, e.means[0], e.means[-1], e.labels[0], e.labels[-1])
-            for e in main_effects(outcome, key)
-        ]
+        bars = [_bar_of_means(effect, mean) for effect in main_effects(outcome, key)]
     return sorted(bars, key=lambda bar: -bar.width)
 
 
@@ -270,6 +268,12 @@ def _bars_one_at_a_time(outcome: Outcome, values: Floats) -> list[Bar]:
         labels = [_label(outcome.rows[row], varied, outcome.inputs(varied.key)[row]) for row in (low, high)]
         bars.append(Bar(varied.key, values[0], values[low], values[high], *labels))
     return bars
+
+
+def _bar_of_means(effect: Effect, mean: float) -> Bar:
+    low, high = int(np.nanargmin(effect.means)), int(np.nanargmax(effect.means))
+    ends = float(effect.means[low]), float(effect.means[high])
+    return Bar(effect.varied.key, mean, *ends, effect.labels[low], effect.labels[high])
 
 
 def _label(row: Row, varied: Varied, value: float) -> str:
