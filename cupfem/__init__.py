@@ -23,6 +23,7 @@ if TYPE_CHECKING:
     from cupfem.pour import pour
     from cupfem.run import Run, load_run
     from cupfem.serving import Drink, Room, Serving, Target, load_serving
+    from cupfem.vary import vary
 
 __version__ = "0.1.0"
 
@@ -42,6 +43,7 @@ __all__ = [
     "load_run",
     "load_serving",
     "pour",
+    "vary",
     "write_fields",
 ]
 
@@ -61,6 +63,7 @@ _HOME = {
     "load_run": "run",
     "load_serving": "serving",
     "pour": "pour",
+    "vary": "vary",
     "write_fields": "exchange",
 }
 

@@ -58,7 +58,8 @@ class Trials:
 
     def cost(self, places: Floats) -> Floats:
         """What is to be made small, `[p]`; infinite where a design cannot be run."""
-        key, sign = (self._best.least, 1.0) if self._best.least else (self._best.most or "", -1.0)
+        key, sense = self._best.aim
+        sign = 1.0 if sense == "least" else -1.0
         values = [_value(result, key) for result in self.results(places)]
         return np.array([sign * value if np.isfinite(value) else np.inf for value in values])
 

@@ -143,7 +143,7 @@ def outcome_of(
 ) -> Outcome:
     """The outcome of finished cases."""
     rows = tuple(
-        Row(number, case.inputs, result.figures, result.error, case.text)
+        Row(number, case.inputs, result.figures, result.error, case.text, case.key)
         for number, (case, result) in enumerate(finished, 1)
     )
     inputs = [row.inputs for row in rows]

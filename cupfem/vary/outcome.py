@@ -70,13 +70,17 @@ class Goal:
 
 @dataclass(frozen=True)
 class Row:
-    """One case: what was varied, what came out, or the error; `text` holds all its inputs."""
+    """One case: what was varied, what came out, or the error.
+
+    `text` holds all its inputs, `key` is that of the store.
+    """
 
     number: int
     inputs: Mapping[str, Value]
     figures: Figures
     error: str = ""
     text: str = field(default="", repr=False)
+    key: str = field(default="", repr=False)
 
 
 @dataclass(frozen=True)

@@ -179,6 +179,11 @@ class Best(Table):
     polish: Annotated[int, Field(ge=0, le=10_000)] = 40
     """Further designs close to the best at the most; zero: none."""
 
+    @property
+    def aim(self) -> tuple[str, Literal["least", "most"]]:
+        """The figure, and which of it is good."""
+        return (self.least, "least") if self.least is not None else (self.most or "", "most")
+
     @model_validator(mode="after")
     def _one(self) -> Self:
         if (self.least is None) == (self.most is None):
@@ -232,7 +237,7 @@ class Plan(InputFile):
     @property
     def recorded(self) -> tuple[str, ...]:
         """Figures to keep, with those that limits and the search need."""
-        goal = [] if self.best is None else [self.best.least or self.best.most or ""]
+        goal = [] if self.best is None else [self.best.aim[0]]
         return tuple(dict.fromkeys([*self.record, *self.limits, *goal]))
 
     @model_validator(mode="after")
