@@ -67,3 +67,8 @@ def hock_schittkowski_21(values):
 def threads(values):
     """What the environment tells linear-algebra libraries in this process."""
     return {"threads": float(os.environ["OPENBLAS_NUM_THREADS"])}
+
+
+def squared(values):
+    """What `logged` gives, at once."""
+    return {"square": values["x"] ** 2}
