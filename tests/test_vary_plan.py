@@ -1,6 +1,8 @@
 """Plan files: what they may say, which paths there are, and which cases come of them."""
 
 import json
+import re
+import runpy
 from pathlib import Path
 
 import numpy as np
@@ -211,3 +213,20 @@ def test_a_change_needs_something_to_change():
 def test_the_published_schema_is_that_of_the_code():
     published = json.loads((ROOT / "docs/schemas/plan.schema.json").read_text(encoding="utf-8"))
     assert published == plan_schema()
+
+
+def test_the_published_reference_is_that_of_the_schema():
+    page = runpy.run_path(str(ROOT / "docs/reference/write.py"))["page"]
+    assert (ROOT / "docs/reference/plan_file.md").read_text(encoding="utf-8") == page()
+
+
+def test_the_plan_of_the_how_to_page_can_be_read():
+    text = (ROOT / "docs/howto/vary.md").read_text(encoding="utf-8")
+    blocks = re.findall(r"```toml\n(.*?)```", text, re.DOTALL)
+    Plan.from_text(blocks[0])
+    drawn = Plan.from_text('combine = "sobol"\nsamples = 4\n' + blocks[1])
+    assert len(drawn.vary) == 4
+    one_key = '[[vary]]\nkey = "cup.height"\nlist = ["90 mm"]\n'
+    limits = Plan.from_text(blocks[2] + one_key)
+    assert limits.recorded[-1] == "hold_time_s"
+    Plan.from_text(blocks[3] + one_key)
