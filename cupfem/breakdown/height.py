@@ -1,9 +1,9 @@
-"""The radial estimate over the whole height, behind the drink of the run: what is one-dimensional in the field.
+"""The radial estimate over the whole height, behind the drink of the run: the one-dimensional part of it.
 
-Where the stack is the same and wet or dry for the same time, the estimate varies with the radius alone, so it is solved at a few
-heights of each such span and taken as linear in between. Where the level falls past a span while somebody drinks
-steadily, a height follows its lower neighbour until the level has passed, and then its upper neighbour, as long after
-the level passed that one. Array shapes: t times, p heights, m solved heights.
+Where the stack is the same and wet or dry for the same time, the estimate varies with the radius alone, so it
+is solved at a few heights of each such span and taken as linear in between. Where the level falls past a span
+while somebody drinks steadily, a height follows its lower neighbour until the level has passed, and then its
+upper neighbour, as long after the level passed that one. Array shapes: t times, p heights, m solved heights.
 """
 
 from __future__ import annotations
@@ -23,8 +23,8 @@ from cupfem.serving import Serving
 Floats = NDArray[np.float64]
 
 SPACING, PASSED_SPACING, SHORT = 25e-3, 5e-3, 6e-3
-"""Largest distance of solved heights in a span, and in one that the level passes; a shorter span is solved in its
-middle alone [m]."""
+"""Largest distance of solved heights in a span, and in one that the level passes; a shorter span is solved
+in its middle alone [m]."""
 INSET = 1e-5  # m; a span is solved this far from its ends
 SAME = 1e-6  # m; nearer heights are one
 STEADY_FALL = 1e-4  # m; a level that moves less within a span of time stands
@@ -32,7 +32,7 @@ STEADY_FALL = 1e-4  # m; a level that moves less within a span of time stands
 
 @dataclass(frozen=True, eq=False)
 class Solved:
-    """Heights of a span `[m]` [m] and their outer face `[m, t]` [degC]; `passed`: the level falls past the span."""
+    """Heights of a span `[m]` [m] and their outer face `[m, t]` [degC]; `passed`: the level falls past it."""
 
     low: float
     high: float
@@ -59,14 +59,15 @@ class OverHeight:
         """`[t, p]` [degC]."""
         ends = np.array([span.high for span in self.spans])
         places = np.clip(np.searchsorted(ends, heights), 0, len(ends) - 1)
-        return np.array(
+        rows = np.array(
             [self._at(self.spans[place], float(z)) for place, z in zip(places, heights, strict=True)]
-        ).T
+        )
+        return np.asarray(rows.T)
 
     def _at(self, span: Solved, height: float) -> Floats:
         known = span.heights
         if len(known) == 1:
-            return span.outer[0]
+            return np.asarray(span.outer[0])
         place = int(np.clip(np.searchsorted(known, height) - 1, 0, len(known) - 2))
         if span.passed:
             return self._after_level(span, place, height)
@@ -76,7 +77,7 @@ class OverHeight:
     def _after_level(self, span: Solved, place: int, height: float) -> Floats:
         passing, above = self._passing(height), self._passing(float(span.heights[place + 1]))
         later = np.interp(self.times - passing + above, self.times, span.outer[place + 1])
-        return np.where(self.times < passing, span.outer[place], later)
+        return np.asarray(np.where(self.times < passing, span.outer[place], later))
 
     def _passing(self, height: float) -> float:
         """When the level falls past a height [s]."""

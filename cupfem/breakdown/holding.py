@@ -29,7 +29,10 @@ APART = 1e-7  # m; a column of its own at each station, twice
 
 @dataclass(frozen=True, eq=False)
 class Holds:
-    """Hold times at stations `[h]` [s], for thin and thick skin, infinite where not reached; NaN: no drink beside."""
+    """Hold times at stations `[h]` [s] for thin and thick skin, infinite where not reached.
+
+    NaN below the floor.
+    """
 
     thin: Floats
     thick: Floats
@@ -66,7 +69,7 @@ def as_estimated(run: Run, heights: Floats, outer: Floats, inner: Floats, drink:
 
 @dataclass(frozen=True, eq=False)
 class FirstTouch:
-    """Rung (f) at stations `[h]`: contact temperature [degC], and when the skin's surface reaches pain [s]."""
+    """Rung (f) at stations `[h]`: contact temperature [degC]; when the skin's surface reaches pain [s]."""
 
     contact: Floats
     hold: Floats

@@ -7,14 +7,17 @@ from collections.abc import Sequence
 import numpy as np
 from numpy.typing import NDArray
 
+from cupfem.breakdown.files import csv_text, headline
 from cupfem.breakdown.height import over_height
 from cupfem.breakdown.holding import Holds, as_estimated, first_touch, hold_times
 from cupfem.breakdown.lateral import lateral_shares
+from cupfem.breakdown.map import Map
 from cupfem.breakdown.places import ends_of
-from cupfem.breakdown.result import Map, Slab
+from cupfem.breakdown.result import Comparison
 from cupfem.breakdown.rungs import Ladder, Servings, along_times, ladder
+from cupfem.breakdown.text import memo
 from cupfem.errors import InputError
-from cupfem.quantities import parse_quantity
+from cupfem.quantities import Units, parse_quantity
 from cupfem.run import Run
 from cupfem.touch.contact import problem_of
 
@@ -27,14 +30,30 @@ PICK_UP = 60.0
 """When the finger of the hold times touches [s], or half-way through a shorter serving."""
 
 
+class Slab(Comparison):
+    """The comparison, with its table, its CSV and its headline figures."""
+
+    def table(self, units: Units = "si") -> str:
+        """The comparison as text to paste into a memo."""
+        return memo(self, units)
+
+    def csv(self) -> str:
+        """All stations and rungs as CSV, unit in each heading."""
+        return csv_text(self)
+
+    def figures(self) -> dict[str, object]:
+        """Headline figures, unit in the key."""
+        return headline(self)
+
+
 def slab(run: Run, heights: Sequence[str] | None = None, pick_up: str | None = None) -> Slab:
     """Set the one-dimensional estimates beside a run, at stations and over the whole height.
 
     Parameters
     ----------
     heights:
-        Stations on the inside face, text with units such as ["45 mm", "60 mm"]; left out: twelve, with the base
-        joint and mid-wall.
+        Stations on the inside face, text with units such as ["45 mm", "60 mm"]; left out: twelve, with the
+        base joint and mid-wall.
     pick_up:
         When the finger of the hold times touches, such as "60 s".
 
@@ -80,7 +99,7 @@ def difference_map(run: Run) -> Map:
 def _holds(
     run: Run, heights: Floats, rungs: tuple[Ladder, ...], given: Servings, pick_up: float
 ) -> dict[str, Holds]:
-    """By rung and for the field; (a) and (c1) hold as (b) and (c), which they are by the time of a pick-up."""
+    """By rung and for the field; (a) and (c1) hold as (b) and (c): they are one by the time of a pick-up."""
     problem = problem_of(run)
     found = {"field": hold_times(run, heights, pick_up, problem)}
     for rung in ("b", "c", "d", "e"):

@@ -1,8 +1,8 @@
 """How much heat the field conducts along the wall, beside what goes through it.
 
-At each column of cells across the wall, H = sum of k_along dT/ds over the solids [W/m], and what a strip of wall gains
-along the wall per area is dH/ds. Its share is |dH/ds| over the heat flux through the outer face, -k dT/dn in the
-outermost cell. Array shapes: k snapshots, c columns, h heights.
+At each column of cells across the wall, H = sum of k_along dT/ds over the solids [W/m], and what a strip of
+wall gains along the wall per area is dH/ds. Its share is |dH/ds| over the heat flux through the outer face,
+-k dT/dn in the outermost cell. Array shapes: k snapshots, c columns, h heights.
 """
 
 from __future__ import annotations
@@ -31,7 +31,7 @@ def lateral_shares(run: Run, heights: Floats) -> Floats:
     s, gained, through = _columns(run, chosen)
     shares = np.abs(gained) / np.maximum(np.abs(through), LEAST_FLUX)
     arc = np.asarray(run.meridian.profile.arc_length_at(heights))
-    return np.interp(arc, s, shares.max(axis=0))
+    return np.asarray(np.interp(arc, s, shares.max(axis=0)))
 
 
 def _columns(run: Run, fields: Floats) -> tuple[Floats, Floats, Floats]:

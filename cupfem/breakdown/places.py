@@ -1,8 +1,9 @@
 """Where on the wall heat does not run straight through: ends, the level, and how far they reach.
 
-A disturbance dies out along the wall like that of a fin, exp(-x/l), l = sqrt(k t / (G_in + G_out)), with k t the
-conduction along the solid layers between two gaps and G the conductances to what is on both sides (fin of infinite
-length: Incropera, DeWitt, Bergman, Lavine, Fundamentals of Heat and Mass Transfer, 6th ed. 2007, sec. 3.6, Table 3.4).
+A disturbance dies out along the wall like that of a fin, exp(-x/l), l = sqrt(k t / (G_in + G_out)), with k t
+the conduction along the solid layers between two gaps and G the conductances to what is on both sides (fin of
+infinite length: Incropera, DeWitt, Bergman, Lavine, Fundamentals of Heat and Mass Transfer, 6th ed. 2007,
+sec. 3.6, Table 3.4).
 """
 
 from __future__ import annotations
@@ -88,7 +89,7 @@ def flags_at(
 ) -> tuple[Flag, ...]:
     """Flags of a station; empty where the wall is one-dimensional.
 
-    `lateral`: share of what flows along the wall; `off`: largest |2-D minus 1-D| [K], flagged from `bound` on.
+    `lateral`: share of what flows along the wall; `off`: largest |2-D minus 1-D| [K], flagged above `bound`.
     """
     height, reach = rungs.station.height, reach_of(run.cup, rungs)
     found = [*_near_ends(height, ends, reach, units), *_near_level(run, height, reach, units)]

@@ -12,7 +12,9 @@ from functools import cached_property
 import numpy as np
 from numpy.typing import NDArray
 
+from cupfem.breakdown.errors import SETTLED, RungError, difference, longest_within, passing
 from cupfem.breakdown.holding import FirstTouch, Holds
+from cupfem.breakdown.map import Map
 from cupfem.breakdown.places import End, Flag, flags_at, nearest_end
 from cupfem.breakdown.rungs import RUNGS, SIMPLEST_FIRST, Ladder, Servings
 from cupfem.errors import InputError
@@ -25,75 +27,7 @@ GOOD_ENOUGH = 2.0
 """A rung is good enough where its outer wall is within this of the field [K]; a choice."""
 FLAG_FROM = 1.0
 """A station whose 2-D minus 1-D reaches this [K] is not one-dimensional."""
-BOUNDS = (1.0, 2.0, 5.0)
-"""Of the map [K]."""
-SETTLED = 1.0
-"""Errors count from this time on [s]: before it the pour itself is not as sudden as either takes it."""
 LOOKED_UP = 1e-6  # m; a height nearer than this to a station is that station
-
-
-@dataclass(frozen=True, eq=False)
-class Map:
-    """Field minus radial estimate, both behind the run's own drink: `difference` `[t, p]` [K] at heights [m].
-
-    `solves`: heights at which the estimate was solved; it is interpolated between them.
-    """
-
-    times: Floats
-    heights: Floats
-    difference: Floats
-    solves: int
-
-    def within(self, bound: float) -> float:
-        """Share of wall and time whose |2-D minus 1-D| is within a bound [K]."""
-        inside = np.abs(self.difference) <= bound
-        return float(self._time_shares @ inside @ self._height_shares)
-
-    def wall_within(self, bound: float) -> float:
-        """Share of the wall's height that stays within a bound [K] from one second on."""
-        late = self.times >= SETTLED
-        return float((np.abs(self.difference[late]) <= bound).all(axis=0) @ self._height_shares)
-
-    def worst_at(self, height: float) -> float:
-        """Largest |2-D minus 1-D| [K] at a height [m] from one second on."""
-        late = np.abs(self.difference[self.times >= SETTLED])
-        return float(np.interp(height, self.heights, late.max(axis=0)))
-
-    @cached_property
-    def _time_shares(self) -> Floats:
-        return _shares(self.times)
-
-    @cached_property
-    def _height_shares(self) -> Floats:
-        return _shares(self.heights)
-
-
-def _shares(places: Floats) -> Floats:
-    """Trapezoidal weights that add to one."""
-    steps = np.diff(places)
-    weights = 0.5 * (np.append(steps, 0.0) + np.insert(steps, 0, 0.0))
-    return np.asarray(weights / weights.sum())
-
-
-@dataclass(frozen=True)
-class RungError:
-    """A rung at a station beside the field.
-
-    `worst` and `end` [K]: largest error of the outer wall from one second on, and that at the end. Times [s],
-    infinite where not reached, and their errors, NaN where one of the two was not reached. `since`, `until`
-    [s]: the longest time during which the outer wall is good enough; None where it never is.
-    """
-
-    rung: str
-    worst: float
-    end: float
-    comfort: float
-    comfort_error: float
-    drink_end: float
-    drink_error: float
-    hold: float
-    hold_error: float
-    span: tuple[float, float] | None
 
 
 @dataclass(frozen=True)
@@ -108,7 +42,7 @@ class Assumption:
 
 
 @dataclass(frozen=True, eq=False)
-class Slab:
+class Comparison:
     """One-dimensional estimates beside the finite-element field.
 
     Attributes
@@ -294,47 +228,25 @@ class Slab:
         if found is None:
             return f"{cup}: no hand estimate is within {limit} of the field at stations beside the drink."
         rung, since, until = found
-        low, high = (format_quantity(float(f([self.heights[p] for p in self.plain])), "length", units)
-                     for f in (min, max))  # fmt: skip
+        heights = self.heights[list(self.plain)]
+        low, high = (format_quantity(float(z), "length", units) for z in (heights.min(), heights.max()))
         told = (
-            f"{cup}: rung ({rung}), {RUNGS[rung].split(':')[0]}, is good enough (outer wall within {limit}) "
+            f"{cup}: rung ({rung}), {RUNGS[rung].split(':')[0]}, is good enough (outer wall within {limit})"
         )
-        told += f"from {since:.3g} s up to {self._until(until)}"
-        simpler = self._simpler(rung, since)
-        return f"{told}{simpler}, on the wall beside the drink from {low} to {high} away from ends."
+        told += f" from {since:.3g} s up to {self._until(until)}"
+        where = f"from {low} to {high}" if len(self.plain) > 1 else f"at {low}"
+        return f"{told}, on the wall beside the drink {where}, away from ends{self._simpler(rung)}."
 
-    def _simpler(self, rung: str, since: float) -> str:
-        """The longest of the rungs before this one that begin as early, if there is one."""
+    def _simpler(self, rung: str) -> str:
+        """The rungs before this one, each with its longest span."""
         before = SIMPLEST_FIRST[: SIMPLEST_FIRST.index(rung)]
-        spans = [
-            (span[1], each) for each in before if (span := self.good(each)) and span[0] <= max(since, SETTLED)
-        ]
-        if not spans:
-            return ""
-        until, found = max(spans)
-        return f" (the simpler ({found}) up to {self._until(until)})"
+        spans = [(each, span) for each in before if (span := self.good(each)) and span[1] > span[0]]
+        told = [f"({each}) from {since:.3g} s up to {self._until(until)}" for each, (since, until) in spans]
+        return f"; simpler: {', '.join(told)}" if told else ""
 
     def _until(self, time: float) -> str:
         end = self.run.serving.duration
         return f"the end ({end:g} s)" if time >= end * (1.0 - 1e-9) else f"{time:.3g} s"
-
-    def table(self, units: Units = "si") -> str:
-        """The comparison as text to paste into a memo."""
-        from cupfem.breakdown.text import memo
-
-        return memo(self, units)
-
-    def csv(self) -> str:
-        """All stations and rungs as CSV, unit in each heading."""
-        from cupfem.breakdown.text import csv_text
-
-        return csv_text(self)
-
-    def figures(self) -> dict[str, object]:
-        """Headline figures, unit in the key."""
-        from cupfem.breakdown.text import headline
-
-        return headline(self)
 
 
 def _above(rungs: tuple[str, ...], text: str, number: float, limit: float) -> Assumption:
@@ -356,33 +268,3 @@ def _radiation_share(rungs: Ladder) -> float:
     }
     whole = sum(fluxes.values())
     return sum(flux for name, flux in fluxes.items() if "radiation" in name) / whole if whole else 0.0
-
-
-def passing(times: Floats, outer: Floats) -> float:
-    """First time [s] at which a wall `[t]` [degC] is above 40 degC, linear in between; infinite if never."""
-    above = outer > COMFORT
-    if not above.any():
-        return np.inf
-    first = int(np.argmax(above))
-    if first == 0:
-        return float(times[0])
-    share = (COMFORT - outer[first - 1]) / (outer[first] - outer[first - 1])
-    return float(times[first - 1] + share * (times[first] - times[first - 1]))
-
-
-def difference(estimate: float, field: float) -> float:
-    """Error of a time [s]; zero where neither was reached, NaN where one of the two was not."""
-    if np.isinf(estimate) and np.isinf(field):
-        return 0.0
-    return estimate - field if np.isfinite(estimate) and np.isfinite(field) else np.nan
-
-
-def longest_within(times: Floats, off: Floats, bound: float) -> tuple[float, float] | None:
-    """Longest span [s] of times from one second on during which `[t]` is within a bound."""
-    best: tuple[float, float] | None = None
-    begin: float | None = None
-    for time, good in zip(times[times >= SETTLED], off[times >= SETTLED] <= bound, strict=True):
-        begin = (float(time) if begin is None else begin) if good else None
-        if begin is not None and (best is None or time - begin > best[1] - best[0]):
-            best = begin, float(time)
-    return best

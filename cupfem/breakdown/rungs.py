@@ -18,16 +18,15 @@ from cupfem.estimates import (
     SlabEstimate,
     Station,
     Steady,
-    TimeScales,
+    TwoNode,
     drink_course,
     effective,
     follow,
     lumped_cooling,
+    lumped_drink,
     slab_estimate,
     station,
     steady,
-    time_scales,
-    two_node,
 )
 from cupfem.serving import Serving
 
@@ -67,14 +66,10 @@ class Servings:
         return {"a": held, "b": held, "c1": held, "c": held, "e": lumped, "d": course}
 
     @cached_property
-    def scales(self) -> TimeScales:
-        """Of wall and drink at the pour."""
-        return time_scales(self.cup, self.serving)
-
-    @cached_property
-    def short_time(self) -> float:
-        """The shorter time constant of wall and drink as two nodes [s]."""
-        return two_node(self.cup, self.serving).time_constants[0]
+    def capacity(self) -> float:
+        """Heat capacity of the drink per wetted area at the pour [J/(m2 K)]."""
+        drink = lumped_drink(self.cup, self.serving)
+        return drink.heat_capacity(0.0, self.serving.drink.temperature) / drink.wetted_area(0.0)
 
     def curve(self, rung: str) -> Callable[[float], float]:
         """The drink of a rung as a function of the time [s]."""
@@ -111,7 +106,8 @@ def ladder(given: Servings, height: float) -> Ladder:
     wall = effective(place, network.temperature.tolist())
     driven = bool(place.inner.films) and abs(place.inside - place.outside) > NO_DRIVE
     slab = slab_estimate(place, inner_film=not place.wetted) if driven else None
-    outer, inner = _by_hand(given, place, network, wall, slab)
+    short = _short_time(given, place, network) if driven else 0.0
+    outer, inner = _by_hand(given, place, network, wall, slab, short)
     radial = follow(
         given.cup, given.serving, height, given.curve("d"), elements=ELEMENTS, tolerance=TOLERANCE
     ).interfaces(given.times)
@@ -120,7 +116,12 @@ def ladder(given: Servings, height: float) -> Ladder:
 
 
 def _by_hand(
-    given: Servings, place: Station, network: Steady, wall: Effective, slab: SlabEstimate | None
+    given: Servings,
+    place: Station,
+    network: Steady,
+    wall: Effective,
+    slab: SlabEstimate | None,
+    short: float,
 ) -> tuple[dict[str, Floats], dict[str, Floats]]:
     times, start = given.times, place.start_temperature
     first, last = float(network.temperature[0]), float(network.temperature[-1])
@@ -131,11 +132,19 @@ def _by_hand(
         outer[rung] = np.full(len(times), last) if slab is None else slab.outside(times, terms)
         inner[rung] = np.where(times > 0.0, first, start)
     for faces, index in ((outer, -1), (inner, 0)):
-        faces["e"] = _behind_lumped_drink(given, place, index)
+        faces["e"] = _behind_lumped_drink(given, place, index, short)
     return outer, inner
 
 
-def _behind_lumped_drink(given: Servings, place: Station, index: int) -> Floats:
+def _short_time(given: Servings, place: Station, network: Steady) -> float:
+    """The shorter time constant of wall and drink as two nodes [s], half of the wall's resistance on each side."""
+    half = 0.5 * float(network.resistance[1:-1].sum())
+    stored = sum(layer.heat_capacity * layer.thickness for layer in place.layers)
+    inside, outside = (1.0 / (float(network.resistance[end]) + half) for end in (0, -1))
+    return TwoNode((given.capacity, stored), inside, outside).time_constants[0]
+
+
+def _behind_lumped_drink(given: Servings, place: Station, index: int, short: float) -> Floats:
     """A face of the steady network behind the lumped drink `[t]`, approached with the shorter time constant.
 
     Common practice, no source.
@@ -146,5 +155,7 @@ def _behind_lumped_drink(given: Servings, place: Station, index: int) -> Floats:
     grid = np.linspace(float(drink.min()) - NO_DRIVE, float(drink.max()) + NO_DRIVE, COURSE_POINTS)
     faces = [float(steady(place, float(temperature)).temperature[index]) for temperature in grid]
     settled = np.interp(drink, grid, faces)
-    missing = (settled[0] - place.start_temperature) * np.exp(-given.times / given.short_time)
+    if short == 0.0:
+        return settled
+    missing = (settled[0] - place.start_temperature) * np.exp(-given.times / short)
     return np.asarray(settled - missing)
