@@ -56,9 +56,9 @@ def ends_of(run: Run) -> tuple[End, ...]:
     if cup.base_disc is not None:
         found += [End("base joint", cup.base_disc.recess), End("base joint", cup.floor)]
     for layer in cup.layer:
-        word = "ridge" if layer.ridge is not None else "gap end" if cup.is_gas(layer) else "layer end"
+        name = f"ridge ({layer.name})" if layer.ridge is not None else f"{layer.name} end"
         for low, high in cup.spans(layer):
-            found += [End(f"{word} ({layer.name})", end) for end in (low, high) if 0.0 < end < cup.height]
+            found += [End(name, end) for end in (low, high) if 0.0 < end < cup.height]
     if run.serving.carrier is not None:
         found.append(End("carrier", run.serving.carrier.height))
     return tuple(sorted(found, key=lambda end: end.height))
