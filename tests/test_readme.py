@@ -99,7 +99,7 @@ def test_the_python_example_runs(tmp_path, monkeypatch, capsys):
 
 @pytest.mark.parametrize(
     ("page", "load", "count"),
-    [("cup_file", "load_cup", 2), ("serving_file", "load_serving", 3)],
+    [("cup_file", "load_cup", 2), ("serving_file", "load_serving", 4)],
 )
 def test_the_files_of_the_how_to_pages_load(tmp_path, page, load, count):
     texts = blocks((ROOT / "docs" / "howto" / f"{page}.md").read_text(encoding="utf-8"), "toml")
