@@ -80,8 +80,8 @@ def crossing(time: Floats, values: Floats, limit: float) -> float | None:
     if not len(above):
         return None
     first = int(above[0])
-    if first == 0:
-        return float(time[0])
+    if first == 0 or np.isnan(values[first - 1]):
+        return float(time[first])
     share = (limit - values[first - 1]) / (values[first] - values[first - 1])
     return float(time[first - 1] + share * (time[first] - time[first - 1]))
 

@@ -163,7 +163,7 @@ def _along(heights: Floats, values: Floats, height: float) -> Floats:
             "height",
             f"{height * 1e3:g} mm",
             "not on the wall",
-            f"0 to {heights[-1] * 1e3:g} mm, on the inside face",
+            f"write a height from {heights[0] * 1e3:g} to {heights[-1] * 1e3:g} mm, on the inside face",
         )
     place = int(np.clip(np.searchsorted(heights, height) - 1, 0, len(heights) - 2))
     share = (height - heights[place]) / (heights[place + 1] - heights[place])
