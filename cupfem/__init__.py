@@ -15,6 +15,7 @@ from types import ModuleType
 from typing import TYPE_CHECKING
 
 if TYPE_CHECKING:
+    from cupfem.breakdown import slab
     from cupfem.cup import Cup, load_cup
     from cupfem.errors import ConvergenceError, CupfemError, InputError
     from cupfem.exchange import write_fields
@@ -43,6 +44,7 @@ __all__ = [
     "load_run",
     "load_serving",
     "pour",
+    "slab",
     "vary",
     "write_fields",
 ]
@@ -63,6 +65,7 @@ _HOME = {
     "load_run": "run",
     "load_serving": "serving",
     "pour": "pour",
+    "slab": "breakdown",
     "vary": "vary",
     "write_fields": "exchange",
 }

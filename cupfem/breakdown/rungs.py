@@ -98,6 +98,11 @@ class Ladder:
         """h L / k of the outer film."""
         return self.network.outer_coefficient / self.wall.conductance
 
+    @property
+    def inner_biot(self) -> float:
+        """h L / k of the inner film."""
+        return self.network.inner_coefficient / self.wall.conductance
+
 
 def ladder(given: Servings, height: float) -> Ladder:
     """The rungs at a height [m]."""
@@ -137,7 +142,7 @@ def _by_hand(
 
 
 def _short_time(given: Servings, place: Station, network: Steady) -> float:
-    """Shorter time constant of wall and drink as two nodes [s], half of the wall's resistance on each side."""
+    """Shorter time constant of wall and drink as two nodes [s], half the wall's resistance on each side."""
     half = 0.5 * float(network.resistance[1:-1].sum())
     stored = sum(layer.heat_capacity * layer.thickness for layer in place.layers)
     inside, outside = (1.0 / (float(network.resistance[end]) + half) for end in (0, -1))
