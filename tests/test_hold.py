@@ -60,6 +60,16 @@ def test_the_cautions_go_with_the_table():
     assert "within half to twice" in table
 
 
+def test_numerical_and_model_uncertainty_are_told_apart():
+    """The range that half and twice the contact conductance make: the worse contact is held longer."""
+    lines = held().table().splitlines()
+    assert sum(line.startswith("numerical: ") for line in lines) == 1
+    half, twice = held().contact_range
+    usual = held().times.thin.min()
+    assert half[0] > usual > twice[0]
+    assert any(f"{twice[0]:.3g} s to {half[0]:.3g} s (thin skin)" in line for line in lines)
+
+
 def test_the_hottest_spot_has_a_place():
     worst = held().figures()
     assert worst.place == "pad rim"

@@ -8,6 +8,7 @@ from __future__ import annotations
 
 from collections.abc import Sequence
 from dataclasses import dataclass
+from functools import cached_property
 
 import numpy as np
 from numpy.typing import NDArray
@@ -125,6 +126,27 @@ class Hold:
             conductance=float(self.contact.conductance[thin[1]]),
         )
 
+    @cached_property
+    def contact_range(self) -> list[tuple[float, float]]:
+        """Shortest hold time of thin skin [s] at half and at twice the contact conductance, each with the
+        time for which it was tried."""
+        place = _place_of_least(self.times.thin, self.times.at_least, self.contact.thin)
+        usual = float(self.contact.conductance[place[1]])
+        out = []
+        for factor in (0.5, 2.0):
+            contact = touch(
+                self.run,
+                np.array([self.columns[place]]),
+                np.array([self.pick_ups[place[0]]]),
+                float(self.contact.time[-1]),
+                skin=self.contact.skin,
+                conductance=factor * usual,
+                gap_resistance=self.pad.gap_resistance,
+            )
+            times = judge(at_hottest(contact, [self.rims[place[1]]]))
+            out.append((float(times.thin[0, 0]), float(times.at_least[0, 0])))
+        return out
+
     def _place(self, height: float, shift: float) -> str:
         """Where on a pad: its rim or within; on a ridged wall also crest or valley."""
         reach = 0.5 * self.pad.width
@@ -155,8 +177,10 @@ class Hold:
         out = ["* section solve at this height; > not reached within that time"]
         out.append("~ pad across an end of a layer, a ridge or the level: the hottest column under it")
         out += [f"{name.strip()}: {value}" for name, value in worst.rows()]
+        out.append("numerical: below 1 %, by a finer mesh and half the tolerance")
         contact = f"contact conductance {worst.conductance:.4g} W/(m2 K), within half to twice"
-        out.append(f"skin: {self.pad.skin}; {contact}")
+        low, high = (_shown(*each) for each in self.contact_range)
+        out.append(f"model: skin {self.pad.skin}; {contact}: {high} to {low} (thin skin)")
         out.append(f"surface thresholds: {THRESHOLD_SOURCE}")
         if any(layer.material.surface_class == "board" for layer in self.run.meridian.layers):
             out.append(f"model: {MOISTURE}")
@@ -164,8 +188,11 @@ class Hold:
 
 
 def _cell(time: float, at_least: float) -> str:
-    shown = f"{time:.3g}" if np.isfinite(time) else f">{at_least:.3g}"
-    return f"{shown:>8}"
+    return f"{_shown(time, at_least, ''):>8}"
+
+
+def _shown(time: float, at_least: float, unit: str = " s") -> str:
+    return f"{time:.3g}{unit}" if np.isfinite(time) else f">{at_least:.3g}{unit}"
 
 
 def _place_of_least(times: Floats, at_least: Floats, felt: Floats) -> tuple[int, int]:
