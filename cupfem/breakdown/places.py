@@ -73,7 +73,7 @@ def _plies(cup: Cup, rungs: Ladder) -> Iterator[tuple[float, float]]:
     """k t along the solids between two resistances [W/K] and the conductances on both sides [W/(m2 K)]."""
     with np.errstate(divide="ignore"):
         conductance = 1.0 / rungs.network.resistance
-    materials = {layer.name: cup.material(layer.material) for layer in cup.layer}
+    materials = {layer.name: cup.layer_material(layer) for layer in cup.layer}
     along, inside = 0.0, float(conductance[0])
     for layer, across in zip(rungs.station.layers, conductance[1:-1], strict=True):
         if layer.gap is None and layer.thickness > 0.0:

@@ -27,6 +27,10 @@ GOOD_ENOUGH = 2.0
 """A rung is good enough where its outer wall is within this of the field [K]; a choice."""
 FLAG_FROM = 1.0
 """A station whose 2-D minus 1-D reaches this [K] is not one-dimensional."""
+LEAST_INNER_BIOT = 20.0
+"""Below it the inner film takes more than 5 % of the difference between drink and outer face."""
+AS_POURED = ("a", "b", "c1", "c")
+"""Rungs that take the drink as it was poured."""
 LOOKED_UP = 1e-6  # m; a height nearer than this to a station is that station
 
 
@@ -180,10 +184,9 @@ class Comparison:
             _above(("c1",), f"one term: Fourier number {when}", fourier, 0.2),
             _above(("a", "b"), f"heated through: Fourier number {when}", fourier, 1.0),
             _below(("e",), "one wall temperature: Biot number outside", rungs.outer_biot, 0.1),
-            _below(
-                ("a", "b", "c1", "c"), f"drink as poured: drop over L2/alpha ({scale:.3g} s) [K]", drop, 1.0
-            ),
-            _below(("a", "b", "c1", "c"), "drink as poured: drop over the serving [K]", whole, 1.0),
+            _above(("c1", "c"), "no film inside: Biot number there", rungs.inner_biot, LEAST_INNER_BIOT),
+            _below(AS_POURED, f"drink as poured: drop over L2/alpha ({scale:.3g} s) [K]", drop, 1.0),
+            _below(AS_POURED, "drink as poured: drop over the serving [K]", whole, 1.0),
             _below(("any without radiation",), "no radiation: its share outside", radiation, 0.05),
             _below(("all",), "nothing along the wall: its share", float(self.lateral[place]), 0.05),
         )
