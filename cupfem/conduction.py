@@ -84,6 +84,11 @@ class Exchange:
     to_drink: bool = False
     feeds: Feeds | None = None
 
+    @property
+    def follows_drink(self) -> bool:
+        """Whether it changes with the drink's state."""
+        return self.to_drink or self.window is not None or self.feeds is not None or callable(self.films)
+
 
 @dataclass(frozen=True, eq=False)
 class FixedTemperature:

@@ -14,8 +14,9 @@ import numpy as np
 from numpy.typing import NDArray
 
 from cupfem.errors import ConvergenceError
+from cupfem.march.linearised import Linearised
 from cupfem.march.scheme import EMBEDDED, GAMMA, NODES, STAGES, WEIGHTS
-from cupfem.march.system import Linearised, System, add_terms
+from cupfem.march.system import System, add_terms
 
 Floats = NDArray[np.float64]
 

@@ -25,7 +25,7 @@ from cupfem.conduction import (
 from cupfem.drink import Ambient, Drink
 from cupfem.films import FixedFilm
 from cupfem.march import March, Section, System
-from cupfem.march.system import Linearised
+from cupfem.march.linearised import Linearised
 from cupfem.materials import get_material
 from cupfem.meridian import LayerBand, Meridian, Profile
 from cupfem.mesh import SectionMesh, build
