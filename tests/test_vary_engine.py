@@ -249,3 +249,30 @@ def test_a_hold_time_and_its_margin(tmp_path):
     assert foam.figures["hold_time_s"] is None
     assert outcome.verdicts() == ["undecided", "failed"]
     assert list(outcome.censored("hold_time_s")) == [True, False]
+
+
+def test_errors_of_the_estimates_are_those_of_the_comparison(tmp_path):
+    """At half the height of the wall, each rung; the same figures as from `slab` of the same run."""
+    import cupfem
+    from cupfem.breakdown import slab
+    from cupfem.vary.cases import cup_model
+    from cupfem.vary.recorded import pour_case
+
+    (tmp_path / "serving.toml").write_text('duration = "30 s"\n')
+    plan = Plan.from_data(
+        {
+            "cup": str(ROOT / "geometries/single_board.toml"),
+            "serving": "serving.toml",
+            "fineness": 0.5,
+            "record": ["slab_d_error_K", "slab_b_error_end_K"],
+            "vary": [{"key": "serving.duration", "list": ["30 s"]}],
+        }
+    )
+    told = pour_case(cup_model(plan, tmp_path, pour_case).case({}).payload)
+    cup, serving = cupfem.load_cup(plan.cup), cupfem.load_serving(tmp_path / "serving.toml")
+    compared = slab(cupfem.pour(cup, serving, fineness=0.5, companion=False), heights=["47.5 mm"])
+    assert told == {
+        "slab_d_error_K": pytest.approx(compared.error("d", 0).worst, rel=1e-8),
+        "slab_b_error_end_K": pytest.approx(compared.error("b", 0).end, rel=1e-8),
+    }
+    assert told["slab_d_error_K"] < told["slab_b_error_end_K"]

@@ -5,11 +5,13 @@ from __future__ import annotations
 import math
 
 from cupfem.axisymmetry import AXISYMMETRIC, volume_moments
+from cupfem.breakdown import slab
 from cupfem.cup import Cup
 from cupfem.errors import InputError
 from cupfem.inputs.messages import did_you_mean
 from cupfem.materials import Material
 from cupfem.pour import pour
+from cupfem.quantities import format_quantity
 from cupfem.run import Run
 from cupfem.run.headline import verdicts
 from cupfem.serving import Serving
@@ -19,6 +21,8 @@ TARGET = {"drink_above": "K", "wall_below": "K", "hold_time": "s"}
 """Key of a [target] that asks for something -> unit of its margin, in the order of the verdicts."""
 TOUCHED = ("hold_", "injury_")
 """How figures begin that only a run with a finger has, which takes about twice as long."""
+ESTIMATED = "slab_"
+"""How figures begin that set the one-dimensional estimates beside the run, at half the height of the wall."""
 DIGITS = 9
 """Significant digits that are kept. What differs between linear-algebra libraries lies in later ones."""
 PROBE = 0.5
@@ -71,7 +75,18 @@ def _told(job: CupJob, fineness: float) -> dict[str, float | None]:
     told["board_mass_g"] = 1e3 * math.fsum(board)
     costs = [None if m.cost_per_kg is None else mass * m.cost_per_kg.value for m, mass in masses.items()]
     told["cost"] = None if None in costs else math.fsum(cost for cost in costs if cost is not None)
+    if any(key.startswith(ESTIMATED) for key in job.recorded):
+        told |= _estimated(run)
     return told | _margins(run, told)
+
+
+def _estimated(run: Run) -> dict[str, float | None]:
+    """Largest and last error of each rung at mid-wall [K], as slab_a_error_K and slab_a_error_end_K."""
+    comparison = slab(run, heights=[format_quantity(0.5 * run.cup.height, "length", digits=DIGITS)])
+    told: dict[str, float | None] = {}
+    for error in comparison.errors[0]:
+        told |= {f"slab_{error.rung}_error_K": error.worst, f"slab_{error.rung}_error_end_K": error.end}
+    return told
 
 
 def _margins(run: Run, told: dict[str, float | None]) -> dict[str, float | None]:
