@@ -34,7 +34,7 @@ def asked_of(serving: Serving, wanted: str | None = None) -> float:
 def brief_map(run: Run) -> Hold:
     """A coarse map for the page of `pour`: a third of the heights and half of the pick-ups."""
     heights = default_heights(run, DEFAULT_PAD.width)[::3]
-    return hold_map(run, heights, default_pick_ups(run.serving.duration)[1::2], sections=1)
+    return hold_map(run, heights, default_pick_ups(run.serving.duration)[::-2][::-1], sections=1)
 
 
 def write_pictures(

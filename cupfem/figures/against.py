@@ -11,7 +11,7 @@ from numpy.typing import NDArray
 
 from cupfem.against import Candidate
 from cupfem.figures import style
-from cupfem.figures.hold import DASHES, in_grip_band, known
+from cupfem.figures.hold import DASHES, NARROW_TICK, in_grip_band, known
 from cupfem.quantities import Units
 from cupfem.run import Run
 from cupfem.touch.verdict import grip_band
@@ -33,10 +33,8 @@ def against_figure(candidates: Sequence[Candidate], units: Units = "si") -> Figu
     wall = style.add_axes(figure, 0.65, 0.9, 7.95, 0.85)
     drink = style.add_axes(figure, 4.35, 0.9, 4.25, 0.85)
     held = style.add_axes(figure, 8.1, 0.9, 0.35, 0.85)
-    walls = [_hottest_of_grip(each.run) for each in candidates]
-    _curves(wall, [each.run for each in candidates], walls, "hottest free wall of the grip band", units)
-    drinks = [each.run.series.drink_temperature for each in candidates]
-    _curves(drink, [each.run for each in candidates], drinks, "drink", units)
+    _walls(wall, [each.run for each in candidates], units)
+    _drinks(drink, [each.run for each in candidates], units)
     if all(each.hold is not None for each in candidates):
         _against_pick_up(held, candidates)
     else:
@@ -51,17 +49,38 @@ def _hottest_of_grip(run: Run) -> Floats:
     return np.asarray(run.series.outer_temperature[:, inside].max(axis=1))
 
 
-def _curves(axes: Axes, runs: Sequence[Run], values: Sequence[Floats], what: str, units: Units) -> None:
+def _walls(axes: Axes, runs: Sequence[Run], units: Units) -> None:
+    """Hottest free wall of the grip band, each curve marked at its highest."""
     duration = runs[0].serving.duration
     first = min(FIRST, 0.1 * duration)
-    shown = [style.shown(each, "temperature", units) for each in values]
-    for index, (run, curve) in enumerate(zip(runs, shown, strict=True)):
+    for index, run in enumerate(runs):
         late = run.time >= first * (1 - 1e-9)
-        axes.plot(run.time[late], curve[late], color=COLOURS[index], linewidth=1.8, dashes=_dash(index))
-    style.log_time(axes, first, duration)
-    style.label_axes(axes, "time after the pour", f"{what} [{style.unit_sign('temperature', units)}]")
-    ends = [_last(curve) for curve in shown]
+        time, curve = run.time[late], style.shown(_hottest_of_grip(run)[late], "temperature", units)
+        axes.plot(time, curve, color=COLOURS[index], linewidth=1.8, dashes=_dash(index))
+        highest = int(np.argmax(curve))
+        _mark(axes, index, (float(time[highest]), float(curve[highest])), (0, 4))
+    style.log_time(axes, first, duration, NARROW_TICK)
+    sign = style.unit_sign("temperature", units)
+    style.label_axes(axes, "time after the pour", f"hottest free wall of the grip band [{sign}]")
+
+
+def _drinks(axes: Axes, runs: Sequence[Run], units: Units) -> None:
+    """The drinks, marked at their ends."""
+    curves = [style.shown(run.series.drink_temperature, "temperature", units) for run in runs]
+    for index, (run, curve) in enumerate(zip(runs, curves, strict=True)):
+        axes.plot(run.time, curve, color=COLOURS[index], linewidth=1.8, dashes=_dash(index))
+    style.even_time(axes, runs[0].serving.duration, 4)
+    style.label_axes(axes, "time after the pour", f"drink [{style.unit_sign('temperature', units)}]")
+    ends = [_last(curve) for curve in curves]
     style.label_right(axes, ends, list(MARKS[: len(ends)]), list(COLOURS[: len(ends)]))
+
+
+def _mark(axes: Axes, index: int, place: tuple[float, float], shift: tuple[float, float]) -> None:
+    """The letter of a cup beside its curve."""
+    axes.annotate(
+        MARKS[index], place, shift, textcoords="offset points", size=style.NORMAL, weight="bold",
+        color=COLOURS[index], ha="center", va="bottom", annotation_clip=False,
+    )  # fmt: skip
 
 
 def _last(curve: Floats) -> float:
@@ -81,13 +100,10 @@ def _against_pick_up(axes: Axes, candidates: Sequence[Candidate]) -> None:
         axes.plot(each.hold.pick_ups, shortest, color=COLOURS[index], linewidth=1.8, dashes=_dash(index))
         ends.append((float(each.hold.pick_ups[0]), float(shortest[0])))
         last = float(each.hold.pick_ups[-1])
-    style.log_time(axes, max(0.8 * ends[0][0], 0.1), 1.1 * last)
+    style.log_time(axes, max(0.8 * ends[0][0], 0.1), 1.1 * last, NARROW_TICK)
     _seconds_axis(axes, "y")
     for index, place in enumerate(ends):
-        axes.annotate(
-            MARKS[index], place, (-2 + 9 * index, 5), textcoords="offset points", size=style.SMALL,
-            color=COLOURS[index], annotation_clip=False,
-        )  # fmt: skip
+        _mark(axes, index, place, (0, 4))
     style.label_axes(axes, "picked up after the pour", "hold time of the grip band, thin skin")
 
 

@@ -25,6 +25,8 @@ LEAST = 0.5
 """Start of the axis of hold times [s] where none is shorter."""
 APART = 0.8
 """The worst place of the wall has a curve of its own where it is below this share of the grip band's."""
+NARROW_TICK = 0.14
+"""Smallest distance of two ticks as a share of the length of a narrow axis."""
 NOTE = "full: thin skin; pale band: up to thick skin; open triangle: not reached within that time"
 
 
@@ -99,7 +101,7 @@ def _against_pick_up(axes: Axes, hold: Hold, asked: float, units: Units) -> None
     words = "grip band, thin skin" if apart else "grip band, thin skin; no place is much worse"
     _beside(axes, hold.pick_ups, thin, words, style.DRINK)
     start = max(min(0.8 * float(hold.pick_ups[0]), 4.0), 0.1)
-    style.log_time(axes, start, 1.15 * float(hold.pick_ups[-1]))
+    style.log_time(axes, start, 1.15 * float(hold.pick_ups[-1]), NARROW_TICK)
     _time_axis(axes, hold, asked, "y")
     style.label_axes(axes, "picked up after the pour", "hold time")
     axes.set_title(f"shortest from {low} to {high} high", y=1.0, size=style.NORMAL, loc="left")

@@ -116,21 +116,21 @@ def label_axes(axes: Axes, x: str, y: str) -> None:
     axes.set_ylabel(y, size=NORMAL, color=INK)
 
 
-def log_time(axes: Axes, start: float, end: float) -> None:
-    """A logarithmic time axis with ticks at times that people name."""
+def log_time(axes: Axes, start: float, end: float, least: float = LEAST_TICK) -> None:
+    """A logarithmic time axis with ticks at times that people name, `least` of its length apart."""
     axes.set_xscale("log")
     ticks: list[float] = []
     for time in TICK_TIMES[(start <= TICK_TIMES) & (end * (1 + 1e-9) >= TICK_TIMES)][::-1]:
-        if not ticks or np.log(ticks[-1] / time) > LEAST_TICK * np.log(end / start):
+        if not ticks or np.log(ticks[-1] / time) > least * np.log(end / start):
             ticks.append(float(time))
     axes.set_xticks(ticks, [clock(time) for time in ticks])
     axes.set_xticks([], minor=True)
     axes.set_xlim(start, end)
 
 
-def even_time(axes: Axes, end: float) -> None:
-    """An even time axis from the pour."""
-    step = next((step for step in TICK_TIMES if end / step <= 7), TICK_TIMES[-1])
+def even_time(axes: Axes, end: float, most: int = 7) -> None:
+    """An even time axis from the pour, with at most so many steps."""
+    step = next((step for step in TICK_TIMES if end / step <= most), TICK_TIMES[-1])
     ticks = np.arange(0.0, end * (1 + 1e-9), step)
     axes.set_xticks(ticks, [clock(float(time)) for time in ticks])
     axes.set_xlim(0.0, end)
