@@ -192,6 +192,10 @@ def _check_outline(cup: Cup) -> None:
     if abs(angle) >= math.degrees(STEEPEST):
         why = f"the wall leans by {angle:.1f} degrees from the axis, and 45 is the limit"
         raise refused(why, "check height and diameters", "cup")
+    thickest = max(cup.wall_thickness(height) for height in _ends(cup))
+    if profile.sharpest() * thickest > 0.25:
+        why = f"it turns too sharply for a wall of {_mm(thickest)}"
+        raise refused(why, 'write inner_curve = "spline", or more points', "cup.inner_profile")
     inside = [(f"at {_mm(height)}", height) for height, _ in cup.outline.inner_profile[1:-1]]
     for end, height in [("at the foot", 0.0), ("at the brim", cup.height), *inside]:
         radius, wall = cup.inner_radius(height), cup.wall_thickness(height)
@@ -259,6 +263,8 @@ def _check_solid_ridges(cup: Cup, layer: Layer, path: str) -> None:
     after = cup.layer[cup.layer.index(layer) + 1 :]
     for low, high in cup.rings(layer):
         where = f"the ring from {_mm(low)} to {_mm(high)}"
+        if any(low < corner < high for corner in cup.profile.corners):
+            raise refused(f"{where} stands across a corner of the inside face", "move it up or down", path)
         for other in cup.layer:
             below, above = cup.blends(other)
             for start, end in cup.spans(other):
@@ -287,7 +293,8 @@ def _check_blend(cup: Cup, layer: Layer, low: float, high: float) -> None:
         if outer.ridge is None and ends_within:
             why = f'"{outer.name}" ends within this length, over which it moves in'
             instead = f'let "{outer.name}" reach further, stop where "{layer.name}" stops, or shorten blend'
-            raise refused(why, instead, f"layer.{layer.name}.blend", _mm(layer.blend))
+            key = "blend" if layer.ridge is None else "ridge"
+            raise refused(why, instead, f"layer.{layer.name}.{key}", _mm(below or above))
 
 
 def _check_base(cup: Cup) -> None:

@@ -74,6 +74,35 @@ class Profile:
         below, above = self._sides(z)
         return np.asarray(normal / np.cos(0.5 * (above - below)))
 
+    def fan_at(self, height: ArrayLike, reach: float) -> Floats:
+        """Share of its distance from the face by which a point moves along the wall, near a corner `[p]`.
+
+        At a corner the outer face is met on the line halfway between both sides, up or down from the normals
+        beside it; the columns of a wall that reaches `reach` [m] fan out towards that line, so that none
+        crosses it. The distance from the face stays as it is.
+        """
+        z = np.asarray(height, dtype=float)
+        fan = np.zeros(z.shape)
+        if self.smooth:
+            return fan
+        for corner, low, high in zip(self.height[1:-1], self.height[:-2], self.height[2:], strict=True):
+            below, above = self._sides(corner)
+            turn = float(np.tan(0.5 * (above - below)))
+            apart = z - corner
+            length = np.where(apart < 0.0, corner - low, high - corner)
+            length = np.maximum(np.minimum(4.0 * reach * abs(turn), 0.5 * length), 1e-12)
+            near = np.maximum(1.0 - np.abs(apart) / length, 0.0)
+            fan += np.where(np.abs(apart) > 1e-12, np.sign(apart) * turn * near, 0.0)
+        return fan
+
+    def sharpest(self) -> float:
+        """Largest share of a piece's length over a distance from the face that a corner takes [1/m]."""
+        if self.smooth or len(self.height) < 3:
+            return 0.0
+        below, above = self._sides(self.height[1:-1])
+        pieces = np.minimum(np.diff(self.height)[:-1], np.diff(self.height)[1:])
+        return float(np.max(np.abs(np.tan(0.5 * (above - below))) / pieces))
+
     @cached_property
     def _pieces(self) -> tuple[list[float], list[float], list[float], list[float]]:
         """Heights, radii, slopes of the straight pieces, and volumes below their lower ends, as plain floats:

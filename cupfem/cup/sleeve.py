@@ -16,7 +16,7 @@ from pydantic import Field, model_validator
 from cupfem.cup.layers import Height, Layer, Size, SleeveLayer
 from cupfem.gaps import CONTACT_CONDUCTANCE
 from cupfem.inputs import InputFile, Positive, json_schema, refused
-from cupfem.quantities import FilmCoefficient, format_quantity
+from cupfem.quantities import FilmCoefficient, format_quantity, parse_quantity
 
 if TYPE_CHECKING:
     from cupfem.cup.model import Cup
@@ -197,8 +197,8 @@ def _raised_heights(layer: SleeveLayer, low: float) -> dict[str, Any]:
 
 
 def _rounded(length: float) -> float:
-    """A length to the picometre, which a file holds exactly."""
-    return round(length, 12)
+    """A length to the picometre, as it is read again from a resolved file."""
+    return parse_quantity(f"{round(length * 1e3, 9):.15g} mm", "length")
 
 
 def _mm(length: float) -> str:

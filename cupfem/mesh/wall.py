@@ -170,11 +170,10 @@ class Wall:
         for layer in self.meridian.layers[:index]:
             if layer.blend_low or layer.blend_high or layer.along:
                 step = 1e-4 * max(layer.blend_low, layer.blend_high, 1e-4)
-                rise = layer.thickness_at(self.z + step) - layer.thickness_at(self.z - step)
-                run = self.meridian.profile.arc_length_at(
-                    self.z + step
-                ) - self.meridian.profile.arc_length_at(self.z - step)
-                slope += rise / np.maximum(run, step)
+                low, high = (np.clip(self.z + side, *layer.reach) for side in (-step, step))
+                rise = layer.thickness_at(high) - layer.thickness_at(low)
+                run = self.meridian.profile.arc_length_at(high) - self.meridian.profile.arc_length_at(low)
+                slope += np.where(run > 0.5 * step, rise / np.maximum(run, 0.5 * step), 0.0)
         return slope
 
     def _lines(self) -> Ints:
@@ -203,5 +202,7 @@ class Wall:
         normal, angle = profile.normal_at(self.z), profile.angle_at(self.z)
         along = np.array([np.sin(angle), np.cos(angle)])
         inner = np.array([profile.radius_at(self.z), self.z])
-        moved = normal[:, :, None] * self.offsets + along[:, :, None] * self.shifts
+        fan = profile.fan_at(self.z, float(self.offsets.max()))
+        shifts = self.shifts + fan[:, None] * self.offsets
+        moved = normal[:, :, None] * self.offsets + along[:, :, None] * shifts
         return np.asarray(inner[:, :, None] + moved)
