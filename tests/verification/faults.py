@@ -9,8 +9,8 @@ from typing import Any
 import numpy as np
 import pytest
 
-from cupfem import axisymmetry, conduction
-from cupfem.conduction import EdgeExchange
+from cupfem import axisymmetry
+from cupfem.conduction import EdgeExchange, cells
 from cupfem.drink import Drink
 
 
@@ -36,8 +36,8 @@ def lost_circumference() -> Any:
 
 def swapped_conductivities() -> Any:
     """Through and along the wall change places."""
-    right = conduction._tensor
-    return planted(conduction, "_tensor", lambda along, through, k_along: right(along, k_along, through))
+    right = cells.tensor
+    return planted(cells, "tensor", lambda along, through, k_along: right(along, k_along, through))
 
 
 def shifted_window(distance: float) -> Any:
