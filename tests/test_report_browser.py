@@ -82,6 +82,7 @@ def test_the_slider_moves_the_picture_by_keys(opened):
     opened.press("ArrowRight", 39)
     assert opened.value(SEEN) == [time, [frame]]
     assert np.array_equal(before, picture_of_slider(opened))
+    opened.value("document.querySelector('#slider input').focus()")
     opened.press("Home", 36)
     assert opened.value(SEEN)[1] == [0]
     opened.press("ArrowLeft", 37)  # before the first there is nothing

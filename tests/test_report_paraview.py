@@ -28,9 +28,10 @@ def run():
 
 
 def inner_point(run) -> int:
-    """A node in the middle of the gap, half way up: inside the mesh, where a search for a point is safe."""
+    """A node in the middle of the outer board, half way up: inside the mesh, where the search for a point is
+    safe, and where a cell spans little: VTK finds places in quadratic cells to some 1e-5 of their size."""
     s, n = run.mesh.wall_coordinates
-    known = np.nan_to_num(np.abs(s - 0.05), nan=1.0) + 10 * np.nan_to_num(np.abs(n - 0.83e-3), nan=1.0)
+    known = np.nan_to_num(np.abs(s - 0.05), nan=1.0) + 10 * np.nan_to_num(np.abs(n - 1.48e-3), nan=1.0)
     return int(np.argmin(known))
 
 
@@ -58,8 +59,8 @@ def test_a_layer_by_its_array(run, told):
     assert told["layer_cells"] == len(run.mesh.regions["gap"])
     assert 0 < told["layer_cells"] < told["cells"]
     _, _, low, high, _, _ = told["layer_bounds"]
-    assert low == pytest.approx(14e-3, abs=2e-3)  # the gap of the file: 14 to 88 mm
-    assert high == pytest.approx(88e-3, abs=2e-3)
+    assert low == pytest.approx(14e-3, abs=4e-3)  # the gap of the file: 14 to 88 mm, and its blend of 3 mm
+    assert high == pytest.approx(88e-3, abs=4e-3)
 
 
 def test_a_point(run, told):
