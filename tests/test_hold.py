@@ -15,6 +15,9 @@ from cupfem.errors import InputError
 from cupfem.run import load_run
 from cupfem.run.store import save_run
 from cupfem.serving import Pad, Serving
+from cupfem.skin import FINGER_PAD
+from cupfem.touch.contact import touch
+from cupfem.touch.criteria import judge
 
 ROOT = Path(__file__).parents[1]
 SHORT = 'duration = "150 s"\n'
@@ -317,3 +320,38 @@ def test_a_lid_keeps_the_wall_above_the_drink_hot():
         found = cupfem.hold(run, heights=["70 mm"], pick_ups=["60 s"], longest="80 s", sections=1)
         times.append(float(found.contact.thick[-1, 0, 0]))
     assert times[1] > times[0] + 3
+
+
+LINED = (
+    RIDGED[: RIDGED.index('[[layer]]\nname = "ribs"')]
+    + """
+[[layer]]
+name = "core"
+material = "kraft liner"
+{core}
+[[layer]]
+name = "outer"
+material = "kraft liner"
+thickness = "0.2 mm"
+"""
+)
+
+
+@pytest.mark.parametrize(
+    ("core", "hotter"),
+    [
+        ('[layer.flute]\nletter = "E"\nmedium_thickness = "0.15 mm"\n', False),
+        ('[layer.strut]\nheight = "1.2 mm"\npitch = "6 mm"\nthickness = "0.5 mm"\n', True),
+    ],
+)
+def test_flutes_and_struts_count_by_the_hotter_of_crest_and_even_layer(core, hotter):
+    """Under a crest of a flute lies the whole height of air, in a strut none: the one is cooler than the even
+    layer that stands for all, the other hotter. The map takes the hotter one."""
+    text = LINED.replace("{core}", core)
+    run = cupfem.pour(cupfem.Cup.from_text(text), Serving.from_text(SHORT), fineness=0.5, companion=False)
+    place = np.array([0.05]), np.array([60.0])
+    even, crest = (touch(run, *place, 60.0, skin=FINGER_PAD, crest=each) for each in (False, True))
+    assert (crest.thick[-1, 0, 0] > even.thick[-1, 0, 0]) == hotter
+    found = cupfem.hold(run, heights=["50 mm"], pick_ups=["60 s"], longest="60 s", sections=1)
+    expected = crest if hotter else even
+    assert found.middle.thick[0, 0] == pytest.approx(judge(expected).thick[0, 0])

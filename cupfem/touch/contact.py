@@ -92,6 +92,16 @@ class Contact:
         )
 
 
+def hotter(one: Contact, other: Contact, moment: float) -> Contact:
+    """The hotter of two contacts of the same places, place by place, by the skin after a moment [s]."""
+    index = int(np.searchsorted(one.time, moment)) - 1
+    chosen = other.thin[index] > one.thin[index]
+    flat = chosen.ravel()
+    names = ("thin", "thick", "surface", "wall", "damage")
+    mixed = {name: np.where(chosen, getattr(other, name), getattr(one, name)) for name in names}
+    return replace(one, **mixed, skins=np.where(flat[:, None], other.skins, one.skins))
+
+
 def touch(
     run: Run,
     heights: Floats,
@@ -102,6 +112,7 @@ def touch(
     conductance: float | Floats | None = None,
     gap_resistance: float = 1.0,
     problem: Problem | None = None,
+    crest: bool = False,
 ) -> Contact:
     """Touch the wall of a run.
 
@@ -117,6 +128,8 @@ def touch(
         Share of each gap's resistance that is left under the grip.
     problem:
         That of the run, if it is there already.
+    crest:
+        Take flutes as they are under a crest, and struts as in a strut, not as even layers.
 
     Raises
     ------
@@ -128,7 +141,8 @@ def touch(
     by_class = np.array([contact_conductance(layer.material) for layer in layers])
     chosen = by_class if conductance is None else np.broadcast_to(conductance, heights.shape).astype(float)
     problem = problem or problem_of(run)
-    march = _March(run, problem, heights, pick_ups, skin, chosen, gap_resistance)
+    wall = Wall.at(run, heights, gap_resistance, crest)
+    march = _March(run, problem, heights, pick_ups, skin, chosen, wall)
     time = step_times(longest)
     shape = (len(time), len(pick_ups), len(heights))
     kept = march.run(time)
@@ -190,11 +204,11 @@ class _March:
         pick_ups: Floats,
         skin: Skin,
         conductance: Floats,
-        gap_resistance: float,
+        wall: Wall,
     ):
         free = Wall.at(run, heights)
         start = free_profiles(run, free, heights, pick_ups)
-        self.wall = Wall.at(run, heights, gap_resistance).repeated(len(pick_ups))
+        self.wall = wall.repeated(len(pick_ups))
         self.skin = SkinColumn.of(skin, self.wall.outer_radius)
         contact = np.tile(conductance, len(pick_ups)) * self.wall.outer_radius
         capacity, link = join(

@@ -18,10 +18,11 @@ from cupfem.problem import Problem
 from cupfem.run import CAUTION, MOISTURE, HoldFigures, Run
 from cupfem.serving import Pad
 from cupfem.skin import THRESHOLD_SOURCE, get_skin
-from cupfem.touch.contact import Contact, problem_of, touch
+from cupfem.touch.contact import Contact, hotter, problem_of, touch
 from cupfem.touch.criteria import HoldTimes, judge
 from cupfem.touch.rim import Rim, at_hottest, no_excess, rim_at
 from cupfem.touch.section import PadContact, on_solid_ridges
+from cupfem.touch.wall import repeating
 
 Floats = NDArray[np.float64]
 Flags = NDArray[np.bool_]
@@ -229,18 +230,10 @@ def hold_map(
     near_end = np.array([_near_end(run, float(height), pad.width, pick_ups) for height in heights])
     rims, solved = _rims(run, problem, pad, heights, float(np.median(pick_ups)), near_end, sections)
     tried = np.unique(np.concatenate([heights, *_beside(run, heights[near_end & ~solved], pad.width)]))
-    columns = touch(
-        run,
-        tried,
-        pick_ups,
-        longest,
-        skin=get_skin(pad.skin),
-        conductance=_conductances(problem, pad, tried),
-        gap_resistance=pad.gap_resistance,
-        problem=problem,
-    )
-    contact, places = _under_pads(columns, heights, np.where(near_end & ~solved, 0.5 * pad.width, 0.0))
-    hottest = at_hottest(contact, rims)
+    columns, even = _columns(run, problem, pad, tried, pick_ups, longest)
+    chosen = _under_pads(columns, heights, np.where(near_end & ~solved, 0.5 * pad.width, 0.0))
+    contact = columns.chosen(chosen, heights)
+    hottest = at_hottest(contact, rims, even.chosen(chosen, heights))
     return Hold(
         run=run,
         pad=pad,
@@ -252,8 +245,31 @@ def hold_map(
         rims=tuple(rims),
         solved=solved,
         near_end=near_end,
-        columns=places,
+        columns=tried[chosen],
     )
+
+
+def _columns(
+    run: Run, problem: Problem, pad: Pad, heights: Floats, pick_ups: Floats, longest: float
+) -> tuple[Contact, Contact]:
+    """Columns of a map, on flutes and struts the hotter of the even layer and of what is under a crest; and
+    those of the even layer."""
+
+    def touched(crest: bool) -> Contact:
+        return touch(
+            run,
+            heights,
+            pick_ups,
+            longest,
+            skin=get_skin(pad.skin),
+            conductance=_conductances(problem, pad, heights),
+            gap_resistance=pad.gap_resistance,
+            problem=problem,
+            crest=crest,
+        )
+
+    even = touched(False)
+    return (hotter(even, touched(True), JUDGED_AT) if repeating(run.cup) else even), even
 
 
 def _conductances(problem: Problem, pad: Pad, heights: Floats) -> Floats:
@@ -274,14 +290,14 @@ def _beside(run: Run, heights: Floats, width: float) -> list[Floats]:
     return [np.clip(heights + share * width, low, high) for share in BESIDE]
 
 
-def _under_pads(columns: Contact, heights: Floats, reach: Floats) -> tuple[Contact, Floats]:
-    """For each pad the hottest of the columns within its reach `[h]` [m], and their heights `[p, h]`."""
+def _under_pads(columns: Contact, heights: Floats, reach: Floats) -> NDArray[np.int_]:
+    """For each pad the hottest of the columns within its reach `[h]` [m]: `[p, h]`."""
     chosen = np.empty((len(columns.pick_ups), len(heights)), dtype=int)
     warmth = columns.thin[int(np.searchsorted(columns.time, JUDGED_AT)) - 1]
     for index, (height, span) in enumerate(zip(heights, reach, strict=True)):
         within = np.flatnonzero(np.abs(columns.heights - height) <= span + 1e-9)
         chosen[:, index] = within[np.argmax(warmth[:, within], axis=1)]
-    return columns.chosen(chosen, heights), columns.heights[chosen]
+    return chosen
 
 
 def fitting(run: Run, width: float) -> tuple[float, float]:

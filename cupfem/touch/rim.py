@@ -20,7 +20,7 @@ from cupfem.march import March, Section, System
 from cupfem.problem import Problem, ambient_at
 from cupfem.run import PadField, Run
 from cupfem.serving import Pad
-from cupfem.skin import THICK_DEPTH, THIN_DEPTH, damage
+from cupfem.skin import THIN_DEPTH, damage
 from cupfem.touch.columns import step_times
 from cupfem.touch.contact import Contact, touch
 from cupfem.touch.felt import felt
@@ -123,21 +123,21 @@ def _snapshot_before(run: Run, pick_up: float) -> tuple[float, int]:
     return float(run.snapshot_times[index]), index
 
 
-def at_hottest(contact: Contact, rims: list[Rim]) -> Contact:
-    """The contact at the hottest places of pads, by the excess of each height `[h]`."""
-    thin = np.array([np.interp(contact.time, rim.time, rim.thin) for rim in rims]).T
-    thick = np.array([np.interp(contact.time, rim.time, rim.thick) for rim in rims]).T
-    start = contact.skins[:1]
-    shape = contact.skins.shape
-    spread = np.broadcast_to(thin[:, None, :], contact.thin.shape).reshape(shape[:2])
-    skins = start + spread[:, :, None] * (contact.skins - start)
-    column = SkinColumn.of(contact.skin, np.ones(1))
-    basal = skins[:, :, column.index(THIN_DEPTH)]
-    low = contact.skins[0, :, column.index(THICK_DEPTH)].reshape(contact.thick.shape[1:])
+def at_hottest(contact: Contact, rims: list[Rim], even: Contact | None = None) -> Contact:
+    """The contact at the hottest places of pads, by the excess of each height `[h]`.
+
+    `even` are the columns that the excess belongs to, where the contact is of others (crests of flutes).
+    """
+    even = even or contact
+    thin = np.array([np.interp(contact.time, rim.time, rim.thin) for rim in rims]).T - 1.0
+    thick = np.array([np.interp(contact.time, rim.time, rim.thick) for rim in rims]).T - 1.0
+    spread = np.broadcast_to(thin[:, None, :], contact.thin.shape).reshape(contact.skins.shape[:2])
+    skins = contact.skins + spread[:, :, None] * (even.skins - even.skins[:1])
+    basal = skins[:, :, SkinColumn.of(contact.skin, np.ones(1)).index(THIN_DEPTH)]
     return replace(
         contact,
         thin=basal.reshape(contact.thin.shape),
-        thick=low + thick[:, None, :] * (contact.thick - low),
+        thick=contact.thick + thick[:, None, :] * (even.thick - even.thick[:1]),
         damage=damage(contact.time, basal).reshape(contact.thin.shape),
         skins=skins,
     )

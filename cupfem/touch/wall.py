@@ -13,13 +13,17 @@ import numpy as np
 from numpy.typing import NDArray
 
 from cupfem.conduction import GasLayer, Solid
+from cupfem.cup import Cup, Layer
+from cupfem.fluids import air_density, air_specific_heat
 from cupfem.meridian import MINIMUM_THICKNESS
 from cupfem.problem import properties
 from cupfem.run import Run
 from cupfem.touch.columns import GAMMA, Columns, cells
+from cupfem.unit_cell import cavity_conductivity, cell_of, stack_at
 
 Floats = NDArray[np.float64]
 Ints = NDArray[np.int_]
+Stack = list[tuple[float, float, float]]
 
 CELLS = 14
 """Cells across a solid layer, finest at its faces."""
@@ -74,12 +78,13 @@ class Wall:
     gaps: list[GapLinks] = field(default_factory=list)
 
     @classmethod
-    def at(cls, run: Run, heights: Floats, gap_resistance: float = 1.0) -> Wall:
+    def at(cls, run: Run, heights: Floats, gap_resistance: float = 1.0, crest: bool = False) -> Wall:
         """Wall of a run at heights on the inside face [m].
 
-        `gap_resistance` is the share of a gap's resistance that is left under a grip.
+        `gap_resistance` is the share of a gap's resistance that is left under a grip. With `crest` layers of
+        flutes and struts are what lies under a crest (in a strut), not the even layer that stands for them.
         """
-        return _Builder(run, heights, gap_resistance).wall()
+        return _Builder(run, heights, gap_resistance, crest).wall()
 
     def repeated(self, times: int) -> Wall:
         """Each column several times, in blocks: column = block x heights + height."""
@@ -104,8 +109,8 @@ class Wall:
 
 
 class _Builder:
-    def __init__(self, run: Run, heights: Floats, gap_resistance: float):
-        self.run, self.z, self.left = run, heights, gap_resistance
+    def __init__(self, run: Run, heights: Floats, gap_resistance: float, crest: bool):
+        self.run, self.z, self.left, self.crest = run, heights, gap_resistance, crest
         self.given = properties(run.cup, run.mesh, run.serving.room.pressure)
         self.radius = np.asarray(run.meridian.profile.radius_at(heights))
         self.gaps: list[GapLinks] = []
@@ -141,13 +146,20 @@ class _Builder:
                 continue
             found = self.given[name]
             if isinstance(found, Solid):
-                capacity[where], link[where] = self._solid(found, nodes[where], where)
+                local = self.crest and name == layer.name and _repeats(self.run.cup.layer[index])
+                stack = local_stack(self.run.cup, self.run.cup.layer[index]) if local else None
+                capacity[where], link[where] = self._solid(found, nodes[where], where, stack)
             else:
                 self._gap(found, nodes, where)
         return nodes, capacity, link
 
-    def _solid(self, solid: Solid, nodes: Floats, where: NDArray[np.bool_]) -> tuple[Floats, Floats]:
+    def _solid(
+        self, solid: Solid, nodes: Floats, where: NDArray[np.bool_], stack: Stack | None
+    ) -> tuple[Floats, Floats]:
         shape = (len(nodes), nodes.shape[1] - 1)
+        if stack is not None:
+            conductivity, capacity = (np.broadcast_to(each, shape) for each in _in_cells(stack, shape[1]))
+            return cells(nodes, conductivity, capacity, self.radius[where])
         through = solid.through(np.full(shape, TYPICAL)) if callable(solid.through) else solid.through
         conductivity = np.broadcast_to(np.asarray(through, dtype=float), shape)
         return cells(nodes, conductivity, np.full(shape, solid.heat_capacity), self.radius[where])
@@ -170,6 +182,42 @@ class _Builder:
             there = np.asarray(layer.thickness_at(self.z)) > MINIMUM_THICKNESS
             out = np.where(there, np.minimum(layer.inner_conductance_at(self.z), TIGHT), out)
         return np.asarray(out)
+
+
+def _repeats(layer: Layer) -> bool:
+    """Whether a layer is of flutes or struts."""
+    return layer.flute is not None or layer.strut is not None
+
+
+def repeating(cup: Cup) -> bool:
+    """Whether a cup has layers of flutes or struts."""
+    return any(_repeats(layer) for layer in cup.layer)
+
+
+def local_stack(cup: Cup, layer: Layer) -> Stack:
+    """What lies across a layer of flutes under a crest, or of struts in a strut: thickness [m], conductivity
+    [W/(m K)] and heat capacity [J/(m3 K)] of each part, inside to outside."""
+    _, plies = cell_of(cup, layer)
+    emissivity = cup.material(layer.material).emissivity.value
+    out = []
+    for name, thickness in stack_at(cup, layer, 0.0):
+        if name in plies:
+            out.append((thickness, plies[name].through, plies[name].heat_capacity))
+        else:
+            across = float(cavity_conductivity(thickness, TYPICAL, emissivity))
+            out.append((thickness, across, float(air_density(TYPICAL) * air_specific_heat(TYPICAL))))
+    return out
+
+
+def _in_cells(stack: Stack, count: int) -> tuple[Floats, Floats]:
+    """Conductivity and heat capacity of cells `[cell]` across a stack: parts in series."""
+    thickness, conductivity, capacity = np.array(stack).T
+    ends = np.concatenate([[0.0], np.cumsum(thickness)])
+    faces = ends[-1] * _fractions(count)
+    low, high = np.maximum(faces[:-1, None], ends[:-1]), np.minimum(faces[1:, None], ends[1:])
+    overlap = np.maximum(high - low, 0.0)
+    width = np.diff(faces)
+    return width / (overlap @ (1.0 / conductivity)), (overlap @ capacity) / width
 
 
 def pressed(layer: GasLayer, share: float) -> GasLayer:
