@@ -28,6 +28,8 @@ LEAST_REACH = 2e-3
 """An end is felt at least so far [m]: layers outside it move in over some millimetres."""
 LATERAL_SHARE = 0.05
 """Share of the heat flux from which on what flows along the wall counts."""
+PROPERTIES = "closed-form properties"
+"""Name of the flag of a wall of flutes or struts that the closed forms of its cells do not tell well."""
 SAME = 1e-6  # m
 
 
@@ -87,7 +89,7 @@ def _plies(cup: Cup, rungs: Ladder) -> Iterator[tuple[float, float]]:
 def flags_at(
     run: Run, rungs: Ladder, ends: tuple[End, ...], lateral: float, off: float, bound: float, units: Units
 ) -> tuple[Flag, ...]:
-    """Flags of a station; empty where the wall is one-dimensional.
+    """Flags of a station; empty where the wall is one-dimensional and its properties are right.
 
     `lateral`: share of what flows along the wall; `off`: largest |2-D minus 1-D| [K], flagged above `bound`.
     """
@@ -97,8 +99,18 @@ def flags_at(
         text = f"flows along the wall: {100 * lateral:.2g} % of what flows through"
         found.append(Flag("lateral flux", lateral, LATERAL_SHARE, text))
     if off > bound:
-        found.append(Flag("2-D minus 1-D", off, bound, f"2-D minus 1-D reaches {off:.2g} K"))
+        found.append(_off(off, bound, bool(found)))
     return tuple(found)
+
+
+def _off(off: float, bound: float, along: bool) -> Flag:
+    """The difference as a flag; where nothing flows along the wall, its closed-form properties are to blame."""
+    told = f"2-D minus 1-D reaches {off:.2g} K"
+    if along:
+        return Flag("2-D minus 1-D", off, bound, told)
+    return Flag(
+        PROPERTIES, off, bound, f"{told} though nothing flows along: {PROPERTIES} of cells"
+    )
 
 
 def reach_of(cup: Cup, rungs: Ladder) -> float:

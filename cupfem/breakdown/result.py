@@ -15,7 +15,7 @@ from numpy.typing import NDArray
 from cupfem.breakdown.errors import SETTLED, RungError, difference, longest_within, passing
 from cupfem.breakdown.holding import FirstTouch, Holds
 from cupfem.breakdown.map import Map
-from cupfem.breakdown.places import End, Flag, flags_at, nearest_end
+from cupfem.breakdown.places import PROPERTIES, End, Flag, flags_at, nearest_end
 from cupfem.breakdown.rungs import RUNGS, SIMPLEST_FIRST, Ladder, Servings
 from cupfem.errors import InputError
 from cupfem.quantities import Units, format_quantity, parse_quantity
@@ -106,9 +106,9 @@ class Comparison:
 
     @cached_property
     def plain(self) -> tuple[int, ...]:
-        """Stations beside the drink that are not flagged."""
+        """Stations beside the drink that are one-dimensional."""
         wet = [place for place, each in enumerate(self.rungs) if each.station.wetted]
-        return tuple(place for place in wet if not self.flagged[place])
+        return tuple(p for p in wet if all(flag.name == PROPERTIES for flag in self.flagged[p]))
 
     @cached_property
     def reference(self) -> int:

@@ -9,7 +9,8 @@ from cupfem.breakdown.map import BOUNDS
 from cupfem.breakdown.result import GOOD_ENOUGH, Comparison
 from cupfem.breakdown.rungs import RUNGS
 from cupfem.quantities import Units, format_quantity
-from cupfem.run import CAUTION, MOISTURE
+from cupfem.run import CAUTION, COMFORT, MOISTURE
+from cupfem.skin import PAIN
 
 Row = Sequence[str]
 
@@ -46,14 +47,14 @@ def memo(slab: Comparison, units: Units) -> str:
 
 def _first_touch(slab: Comparison, place: int, units: Units) -> str:
     contact, hold = float(slab.first.contact[place]), float(slab.first.hold[place])
-    reached = f"skin surface at 43 degC: {_time(hold)}"
+    reached = f"skin surface at {_temperature(PAIN, units)}: {_time(hold)}"
     return f"f    first touch by effusivities: contact at {_temperature(contact, units)}, {reached}"
 
 
 def _rung_rows(slab: Comparison, place: int, units: Units) -> list[Row]:
     unit = _kelvin(units)
     rows: list[Row] = [
-        ("", "rung", "40 degC after", "(error)", "wall at end", f"worst [{unit}]",
+        ("", "rung", f"{_temperature(COMFORT, units)} after", "(error)", "wall at end", f"worst [{unit}]",
          f"within {_difference(GOOD_ENOUGH, units)} {unit}", "drink at end", "hold", "(error)")
     ]  # fmt: skip
     field, drink = slab.field(place), slab.run.series.drink_temperature
@@ -104,7 +105,7 @@ def _flag_lines(slab: Comparison, units: Units) -> list[str]:
 
 
 def _told(name: str, text: str) -> str:
-    return text if name in text or name in ("lateral flux",) else f"{name} {text}"
+    return text if name in text or name == "lateral flux" else f"{name} {text}"
 
 
 def _map_lines(slab: Comparison, units: Units) -> list[str]:
