@@ -3,8 +3,8 @@
 from __future__ import annotations
 
 import math
-from dataclasses import dataclass
-from typing import ClassVar, Literal
+from dataclasses import dataclass, field
+from typing import Any, ClassVar, Literal
 
 import numpy as np
 
@@ -101,6 +101,7 @@ class HeadspaceConvection(Convection):
     pressure: float
     place: Literal["wall", "lid"] = "wall"
     lean: float = 0.0
+    _last: list[Any] = field(default_factory=list, init=False, repr=False, compare=False)
     label: ClassVar[str] = "natural convection, headspace"
     source: ClassVar[str] = "Churchill and Chu 1975, McAdams 1954 (Incropera 6th ed. Eqs. 9.26, 9.30-9.32)"
 
@@ -117,6 +118,13 @@ class HeadspaceConvection(Convection):
         return [reached(nu.VERTICAL_PLATE, rayleigh)]
 
     def coefficient(self, surface: Values, surroundings: Values, height: Values = 0.0) -> Values:
+        """Film coefficient [W/(m2 K)]; heat and vapour ask for the same one in turn, so the last is kept."""
+        if not (self._last and self._last[0] is surface and self._last[1] == surroundings):
+            self._last[:] = [surface, surroundings, self._coefficient(surface, surroundings)]
+        kept: Values = self._last[2]
+        return kept
+
+    def _coefficient(self, surface: Values, surroundings: Values) -> Values:
         air, rayleigh, heavier = self._numbers(surface, surroundings)
         if self.place == "lid":
             nusselt = nu.nusselt_horizontal_plate(rayleigh, upward_share(heavier, HEAVINESS_WIDTH))

@@ -11,7 +11,7 @@ from __future__ import annotations
 
 import numpy as np
 
-from cupfem.fluids.polynomial import Coefficients, Value, horner, horner_stacked, stacked
+from cupfem.fluids.polynomial import Coefficients, Value, horner, stacked, values_of
 from cupfem.quantities import ZERO_CELSIUS
 
 AIR_RANGE = (-40.0, 150.0)  # degC, of the fits
@@ -54,7 +54,7 @@ def air_specific_heat(temperature: Value) -> Value:
 def air_transport(temperature: Value) -> tuple[Value, Value, Value]:
     """Conductivity [W/(m K)], viscosity [Pa s], specific heat [J/(kg K)], as the three functions give."""
     if isinstance(temperature, np.ndarray) and temperature.ndim == 1:
-        conductivity, viscosity, specific_heat = horner_stacked(_TRANSPORT, temperature)
+        conductivity, viscosity, specific_heat = values_of(_TRANSPORT, temperature)
         return conductivity, viscosity, specific_heat
     return air_conductivity(temperature), air_viscosity(temperature), air_specific_heat(temperature)
 

@@ -16,10 +16,10 @@ from cupfem.fluids.polynomial import (
     Value,
     derivative,
     horner,
-    horner_stacked,
     integral,
     scaled,
     stacked,
+    values_of,
 )
 
 MEMORY = "from memory, not re-checked"
@@ -66,7 +66,7 @@ class Liquid:
     def transport(self, temperature: Array) -> tuple[Array, Array, Array, Array, Array]:
         """Density, specific heat, conductivity, viscosity and expansion at temperatures `[point]`, as the
         methods below give them one by one."""
-        density, specific_heat, conductivity, fluidity, buoyant, slope = horner_stacked(
+        density, specific_heat, conductivity, fluidity, buoyant, slope = values_of(
             self._transport, temperature
         )
         return density, specific_heat, conductivity, 1.0 / fluidity, -slope / buoyant

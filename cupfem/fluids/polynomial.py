@@ -26,20 +26,20 @@ def horner(coefficients: Coefficients, x: Value) -> Value:
 
 
 def stacked(*polynomials: Coefficients) -> Array:
-    """Several polynomials as one table `[power, polynomial]` for `horner_stacked`."""
-    table = np.zeros((max(len(coefficients) for coefficients in polynomials), len(polynomials)))
-    for column, coefficients in enumerate(polynomials):
-        table[: len(coefficients), column] = coefficients
+    """Several polynomials as one table `[polynomial, power]` for `values_of`."""
+    table = np.zeros((len(polynomials), max(len(coefficients) for coefficients in polynomials)))
+    for row, coefficients in zip(table, polynomials, strict=True):
+        row[: len(coefficients)] = coefficients
     return table
 
 
-def horner_stacked(table: Array, x: Array) -> Array:
+def values_of(table: Array, x: Array) -> Array:
     """Values `[polynomial, point]` at points `[point]`: one pass for all is faster than one each."""
-    result = np.repeat(table[-1][:, None], len(x), axis=1)
-    for row in table[-2::-1]:
-        result *= x
-        result += row[:, None]
-    return result
+    powers = np.empty((table.shape[1], len(x)))
+    powers[0] = 1.0
+    for power in range(1, len(powers)):
+        np.multiply(powers[power - 1], x, out=powers[power])
+    return np.asarray(table @ powers)
 
 
 def derivative(coefficients: Coefficients) -> Coefficients:

@@ -28,7 +28,7 @@ ITERATION_TOLERANCE = 5e-3
 """Newton changes below this share of the time tolerance end the iteration."""
 DIVERGED = 150.0
 """Change of an iterate [K] with which a stage is given up."""
-SLOW = 0.4
+SLOW = 0.25
 """An iteration whose changes fall by less than this factor has its matrix formed anew, once a stage."""
 EARLY = 3
 """The first changes of a stage tell nothing of the rate yet."""
