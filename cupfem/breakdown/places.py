@@ -108,9 +108,7 @@ def _off(off: float, bound: float, along: bool) -> Flag:
     told = f"2-D minus 1-D reaches {off:.2g} K"
     if along:
         return Flag("2-D minus 1-D", off, bound, told)
-    return Flag(
-        PROPERTIES, off, bound, f"{told} though nothing flows along: {PROPERTIES} of cells"
-    )
+    return Flag(PROPERTIES, off, bound, f"{told} with no heat along: {PROPERTIES} of cells")
 
 
 def reach_of(cup: Cup, rungs: Ladder) -> float:

@@ -1,8 +1,8 @@
 """The layered transient radial estimate: conduction through the stack of one station, in time.
 
 Quadratic elements on the radius (three nodes, Gauss points of order five), nodes shared between solids that
-touch; a gap or a contact is a link between two nodes with its own conductance, and the heat capacity of the
-gas lies on both. Films and gaps follow the temperatures as they do in the field; nothing runs along the
+touch; a contact is a link between two nodes with its own conductance, a gap one element in which that
+conductance is spread evenly, with the heat capacity of its gas. Films and gaps follow the temperatures as they do in the field; nothing runs along the
 wall. The elements are standard: O. C. Zienkiewicz and R. L. Taylor, The Finite Element Method.
 """
 
@@ -36,6 +36,10 @@ _POINTS = np.array([-math.sqrt(0.6), 0.0, math.sqrt(0.6)])
 _WEIGHTS = np.array([5.0, 8.0, 5.0]) / 9.0
 _SHAPE = np.array([0.5 * _POINTS * (_POINTS - 1.0), 1.0 - _POINTS**2, 0.5 * _POINTS * (_POINTS + 1.0)])
 _SLOPE = np.array([_POINTS - 0.5, -2.0 * _POINTS, _POINTS + 0.5])
+_EVEN = (_SLOPE * _WEIGHTS) @ _SLOPE.T * 2.0
+"""Conductance between three nodes that lies evenly between the outer two, in shares of the whole [3, 3]."""
+_PAIR = np.array([[1.0, -1.0], [-1.0, 1.0]])
+_STORED = 0.5 * (_SHAPE * _WEIGHTS) @ _SHAPE.T
 
 
 @dataclass(frozen=True)
@@ -120,7 +124,7 @@ class RadialWall:
         for n, layer in enumerate(self.station.layers):
             start, end = len(nodes) - 1, self.station.radii[n + 1]
             if layer.gap is not None or layer.thickness == 0.0:
-                nodes.append(end)
+                nodes.extend([end] if layer.gap is None else [0.5 * (nodes[-1] + end), end])
                 links.append((start + self._first, n))
             else:
                 nodes.extend(_graded(nodes[-1], end, elements, GRADING if n == 0 else 1.0))
@@ -150,8 +154,8 @@ class RadialWall:
     def _add_gas(self, start: int, n: int) -> None:
         inner, outer = self.station.radii[n], self.station.radii[n + 1]
         gas = self.station.layers[n].heat_capacity * 0.5 * (outer * outer - inner * inner)
-        for node in (start, start + 1):
-            self.mass[node, node] += 0.5 * gas
+        if gas:
+            self.mass[start : start + 3, start : start + 3] += gas * _STORED
 
     def start(self) -> Floats:
         """State at the pour."""
@@ -173,9 +177,9 @@ class RadialWall:
         out[self._first] -= self.station.radii[0] * inner
         out[-1] -= self.station.radii[-1] * self._outer_flux(time, float(state[-1]))
         for start, n in self._links:
-            flow = self._link_flow(n, float(state[start]), float(state[start + 1]))
-            out[start] -= flow
-            out[start + 1] += flow
+            shares, end = self._shares(start, n)
+            conductance = self._conductance(n, float(state[start]), float(state[end - 1]))
+            out[start:end] -= conductance * (shares @ state[start:end])
         if self.lumped is not None:
             out[0] = self.lumped.rate(time, float(state[0]), inner)
         return out
@@ -187,7 +191,7 @@ class RadialWall:
         by_last = (self._outer_flux(time, last + STEP) - self._outer_flux(time, last)) / STEP
         out[BAND, -1] -= self.station.radii[-1] * by_last
         for start, n in self._links:
-            self._add_link_slopes(out, start, n, float(state[start]), float(state[start + 1]))
+            self._add_link_slopes(out, start, n, state)
         self._add_inner_slopes(out, time, float(state[self._first]), self.around(time, state))
         return out
 
@@ -213,9 +217,14 @@ class RadialWall:
     def _outer_flux(self, time: float, surface: float) -> float:
         return float(self.station.outer.heat_flux(surface, self.station.outside, self.station.height, time))
 
-    def _link_flow(self, n: int, inner: float, outer: float) -> float:
+    def _shares(self, start: int, n: int) -> tuple[Floats, int]:
+        """How a link's conductance lies between its nodes, and the node after the last."""
+        return (_PAIR, start + 2) if self.station.layers[n].gap is None else (_EVEN, start + 3)
+
+    def _conductance(self, n: int, inner: float, outer: float) -> float:
+        """Of a gap or contact, from the temperatures of its faces [W/(m K) per radian]."""
         radius = self.station.radii[n]
-        return radius * float(self.station.layers[n].conductance(inner, outer, radius)) * (inner - outer)
+        return radius * float(self.station.layers[n].conductance(inner, outer, radius))
 
     def _add_inner_slopes(self, out: Floats, time: float, face: float, around: float) -> None:
         radius, first = self.station.radii[0], self._first
@@ -230,14 +239,17 @@ class RadialWall:
         out[BAND - 1, 1] += (self.lumped.rate(time, around, flux + STEP * by_face) - here) / STEP
         out[BAND, 0] += (self.lumped.rate(time, around + STEP, flux + STEP * by_drink) - here) / STEP
 
-    def _add_link_slopes(self, out: Floats, start: int, n: int, inner: float, outer: float) -> None:
-        here = self._link_flow(n, inner, outer)
-        by_inner = (self._link_flow(n, inner + STEP, outer) - here) / STEP
-        by_outer = (self._link_flow(n, inner, outer + STEP) - here) / STEP
-        out[BAND, start] -= by_inner
-        out[BAND + 1, start] += by_inner
-        out[BAND - 1, start + 1] -= by_outer
-        out[BAND, start + 1] += by_outer
+    def _add_link_slopes(self, out: Floats, start: int, n: int, state: Floats) -> None:
+        shares, end = self._shares(start, n)
+        inner, outer = float(state[start]), float(state[end - 1])
+        here = self._conductance(n, inner, outer)
+        slopes = here * shares
+        drive = shares @ state[start:end]
+        slopes[:, 0] += (self._conductance(n, inner + STEP, outer) - here) / STEP * drive
+        slopes[:, -1] += (self._conductance(n, inner, outer + STEP) - here) / STEP * drive
+        for row in range(end - start):
+            for column in range(end - start):
+                out[BAND + row - column, start + column] -= slopes[row, column]
 
 
 def _graded(start: float, end: float, elements: int, ratio: float) -> list[float]:
