@@ -236,3 +236,57 @@ def test_lengths_of_a_bent_wall_follow_its_inside_face(serving):
     wall_thickness = 0.4e-3 + 0.6 * 1e-3 + 0.8 * 0.3e-3
     mean = 0.6 * 0.06 + 0.4 * 0.07 + 2.0 * wall_thickness * math.cos(math.atan(0.1))
     assert edges.mean_outside_diameter(cup) == pytest.approx(mean, rel=1e-9)
+
+
+def test_a_cup_in_the_air_has_a_plate_below(cup, serving):
+    film = edges.underside_films(cup, serving, on_table=False)["underside"]
+    assert film.label == "natural convection, horizontal face + radiation"
+    assert edges.heel_films(cup, Serving(films={"heel": {"correlation": "contact with the table"}}), False)
+    == {}
+
+
+def test_a_table_of_a_material_warms_from_when_the_cup_stands_there(cup):
+    """Wood of 0.15 W/(m K) or so; the library tells it."""
+    wood = Serving.from_text('[table]\nmaterial = "wood"')
+    table = edges.underside_films(cup, wood, True, 60.0)["underside"].table_resistance
+    assert table.since == 60.0
+    assert table.radius == pytest.approx(0.028)
+    assert table.resistance(61.0) < table.resistance(600.0)
+
+
+def test_lid_by_conductance_or_by_material(cup):
+    given = Serving.from_text('[lid]\nconductance = "8 W/(m^2 K)"')
+    assert edges.lid_films(cup, given) == {"lid": FixedFilm(8.0)}
+    assert edges.lid_resistance(cup, given) == 0.0
+    plain = Serving.from_text('[lid]\nmaterial = "polystyrene"\nthickness = "0.5 mm"\nvent = "4 mm^2"')
+    assert list(edges.lid_films(cup, plain)) == ["lid convection", "lid radiation"]
+    assert edges.lid_resistance(cup, plain) == pytest.approx(0.5e-3 / 0.15, rel=0.07)  # k 0.14 to 0.16
+    assert [hole.area for hole in edges.lid_holes(plain)] == [pytest.approx(4e-6)]
+
+
+def test_altitude_reaches_every_film(cup):
+    high = Serving.from_text('[room]\naltitude = "3 km"')
+    pressure = high.room.pressure
+    assert pressure == pytest.approx(70109.0, abs=5.0)  # ISO 2533:1975, table for 3000 m
+    assert edges.outside_films(cup, high, 0.9)["outside convection"].natural.pressure == pressure
+    assert edges.dry_films(cup, high, 0.05)["dry wall convection"].pressure == pressure
+    assert edges.underside_films(cup, high)["underside"].pressure == pressure
+    assert edges.gap_of(cup, 1, pressure=pressure).pressure == pressure
+
+
+def test_view_factors_under_a_lid_leave_nothing_out(cup):
+    """What a dry wall sees is drink, lid and itself: F_drink + F_lid < 1, and drink to lid by reciprocity."""
+    lidded = Serving.from_text("[lid]")
+
+    class Inside:
+        level, present, temperature, vapour_pressure, lid = 0.06, True, 70.0, 2e4, 50.0
+
+    found = edges.lidded_films(cup, lidded, Inside(), 1.0)
+    to_drink = found[edges.DRY_TO_DRINK].factor / edges.WATER_EMISSIVITY
+    to_lid = found[edges.DRY_TO_LID].factor / edges.lid_emissivity(cup, lidded)
+    lower, upper, depth = cup.inner_radius(0.06), cup.inner_radius(0.1), 0.04
+    wall = math.pi * (lower + upper) * math.hypot(depth, upper - lower)
+    drink_to_lid = edges.disk_to_disk(lower, upper, depth)
+    assert wall * to_drink == pytest.approx(math.pi * lower**2 * (1.0 - drink_to_lid), rel=1e-12)
+    lid_to_drink = drink_to_lid * lower**2 / upper**2
+    assert wall * to_lid == pytest.approx(math.pi * upper**2 * (1.0 - lid_to_drink), rel=1e-9)

@@ -165,3 +165,16 @@ def test_a_lid_put_on_later_changes_nothing_before(cup):
     shared = np.interp(late.time[before], without.time, without.series.drink_temperature)
     assert late.series.drink_temperature[before] == pytest.approx(shared, abs=0.02)
     assert late.series.drink_temperature[-1] > without.series.drink_temperature[-1] + 0.5
+
+
+def test_events_and_fingers_together(cup):
+    """A hand from before the lid comes off until after a refill: two wall sections share one headspace."""
+    run = poured(
+        cup,
+        'duration = "100 s"\n[lid]\nsip_hole = "1.2 cm^2"\n'
+        '[[event]]\nlid = "off"\nat = "50 s"\n[[event]]\nsip = "40 ml"\nfirst = "60 s"\n'
+        '[[event]]\nrefill = "20 ml"\nat = "70 s"\n'
+        '[[pad]]\nheight = "60 mm"\nwidth = "15 mm"\nshare = 0.2\npick_up = "30 s"\nrelease = "80 s"\n',
+    )
+    assert run.ledger.out["hand"] > 1.0
+    assert abs(run.ledger.relative_residual) < CLOSED

@@ -435,3 +435,38 @@ def test_condensate_in_a_cup_is_no_resistance():
     latent = jakob_corrected_latent_heat(2308.004e3, PropsSI("C", *state), 10.0)
     h = condensate_film_coefficient(10.0, 0.02, vapour_density=0.29, latent_heat=latent, **liquid)
     assert h == pytest.approx(16067.1, rel=5e-3)
+
+
+# table, heel, stirring, foam
+
+
+def test_thick_table_late_and_early():
+    """Carslaw and Jaeger, 2nd ed. 1959, sec. 8.2: a disk on a half-space passes 4 K a V in the end;
+    Incropera, 6th ed. 2007, Eq. 5.58: k V / (pi alpha t)^(1/2) per area at first."""
+    conductivity, diffusivity, radius = 0.15, 1.5e-7, 0.027
+    table = films.ThickTable(conductivity, diffusivity, radius, since=100.0)
+    area = math.pi * radius**2
+    assert area / table.resistance(1e12) == pytest.approx(4.0 * conductivity * radius, rel=1e-3)
+    early = conductivity / math.sqrt(math.pi * diffusivity * 1.0)
+    assert 1.0 / table.resistance(101.0) == pytest.approx(early, rel=0.05)
+
+
+def test_recess_over_a_thick_table_is_the_one_over_its_resistance():
+    table = films.ThickTable(0.15, 1.5e-7, 0.027)
+    over_table = films.CavityAir(0.008, table_resistance=table).heat_flux(70.0, 22.0, 0.0, 50.0)
+    fixed = films.CavityAir(0.008, table_resistance=table.resistance(50.0)).heat_flux(70.0, 22.0, 0.0, 0.0)
+    assert over_table == pytest.approx(fixed, rel=1e-14)
+
+
+def test_heel_by_hand():
+    """200 W/(m2 K) in series with 1/30 m2 K/W: 48 K over 0.03833 m2 K/W."""
+    assert films.TableContact(1.0 / 30.0).heat_flux(70.0, 22.0, 0.0, 0.0) == pytest.approx(1252.2, abs=0.1)
+
+
+def test_stirring_blends_with_the_still_drink():
+    still = films.DrinkConvection(water(), 0.07)
+    natural = still.coefficient(60.0, 80.0)
+    stirred = films.Stirred(still, 1500.0).coefficient(60.0, 80.0)
+    assert stirred**3 == pytest.approx(natural**3 + 1500.0**3, rel=1e-12)
+    assert films.Stirred(still, 1e-6).coefficient(60.0, 80.0) == pytest.approx(natural, rel=1e-12)
+    assert films.Stirred(still, 1500.0).applied(60.0, 80.0) == still.applied(60.0, 80.0)
