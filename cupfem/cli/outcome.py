@@ -51,9 +51,18 @@ def write_pictures(
     if len(candidates) > 1:
         _write_against(candidates, place, asked, units)
     if report:
+        from cupfem.breakdown import slab
         from cupfem.report import write_report
 
-        write_report(first.run, place / "report.html", units, candidates=candidates, asked=asked, drawn=drawn)
+        write_report(
+            first.run,
+            place / "report.html",
+            units,
+            candidates=candidates,
+            asked=asked,
+            drawn=drawn,
+            slab=slab(first.run),
+        )
 
 
 def _write_against(candidates: Sequence[Candidate], place: Path, asked: float, units: Units) -> None:

@@ -9,6 +9,7 @@ from pathlib import Path
 from typing import Any
 
 from cupfem.against import Candidate, hold_answers, hold_grounds, hold_heads, hold_rows, side_by_side
+from cupfem.breakdown import Slab
 from cupfem.exchange.run_folder import versions
 from cupfem.figures import (
     Figure,
@@ -19,6 +20,7 @@ from cupfem.figures import (
     png,
 )
 from cupfem.figures.against import MARKS
+from cupfem.figures.breakdown import difference_figure, ladder_figure
 from cupfem.figures.files import DPI, PICTURES
 from cupfem.figures.style import clock, degrees, quantity, shown, unit_sign
 from cupfem.inputs import resolved_toml
@@ -32,6 +34,14 @@ FRAME_DPI = 95
 FIRST_FRAME = 60.0
 """Time [s] at which the field is shown first, or the nearest."""
 NUMERICAL = "numerical:"
+DIFFERENCE_WORDS = (
+    "Map of the difference between field and one-dimensional estimate over time and height",
+    "Where and when a one-dimensional estimate of the outer wall is off; grey: ends on the wall.",
+)
+LADDER_WORDS = (
+    "Outer wall against time by every estimate and by the field",
+    "The estimates, from the simplest up, beside the field at one station.",
+)
 HOLD_WORDS = (
     "Hold time against height at three pick-ups, and against the pick-up in the grip band",
     "How long a finger pad can stay: against height, and against the moment at which it touches.",
@@ -64,6 +74,7 @@ def content(
     asked: float,
     units: Units = "si",
     drawn: Mapping[str, Path] | None = None,
+    slab: Slab | None = None,
 ) -> dict[str, Any]:
     """All values of the page: of the first cup, and of the others beside it.
 
@@ -83,7 +94,9 @@ def content(
         "held": held_sentence(run, units),
         "caution": CAUTION,
         "rows": headline.rows(run, run.figures(), units),
-        "pictures": _pictures(candidates, asked, units, drawn or {}),
+        "pictures": _pictures(candidates, asked, units, drawn or {})
+        | ({} if slab is None else _slab_pictures(slab, units)),
+        "estimates": None if slab is None else {"sentence": slab.sentence(units), "table": slab.table(units)},
         "hold": None if first.hold is None else _hold(first.hold, asked, units),
         "against": _against(candidates, asked, units),
         "frames": [Frame(_embedded(figure, FRAME_DPI), clock(time)) for time, figure in frames],
@@ -206,6 +219,13 @@ def _pictures(
     if len(candidates) > 1:
         pictures["against"] = Picture(_embedded(against_figure(candidates, units), DPI), *AGAINST_WORDS)
     return pictures
+
+
+def _slab_pictures(slab: Slab, units: Units) -> dict[str, Picture]:
+    return {
+        "difference": Picture(_embedded(difference_figure(slab, units), DPI), *DIFFERENCE_WORDS),
+        "ladder": Picture(_embedded(ladder_figure(slab, units=units), DPI), *LADDER_WORDS),
+    }
 
 
 def _words(units: Units) -> dict[str, tuple[str, str]]:

@@ -8,6 +8,7 @@ from pathlib import Path
 from jinja2 import Environment, PackageLoader, StrictUndefined
 
 from cupfem.against import ASKED, Candidate
+from cupfem.breakdown import Slab
 from cupfem.quantities import Units
 from cupfem.report.content import content
 from cupfem.run import Run
@@ -23,6 +24,7 @@ def write_report(
     candidates: Sequence[Candidate] = (),
     asked: float = ASKED,
     drawn: Mapping[str, Path] | None = None,
+    slab: Slab | None = None,
 ) -> Path:
     """Write the page of a run; returns its path. A second call writes the same bytes.
 
@@ -34,9 +36,12 @@ def write_report(
         Hold time [s] to judge by.
     drawn:
         Pictures that `write_figures` has written, which are then not drawn again.
+    slab:
+        One-dimensional estimates beside the run.
     """
     place = Path(path)
-    place.write_text(render(run, units, candidates=candidates, asked=asked, drawn=drawn), encoding="utf-8")
+    text = render(run, units, candidates=candidates, asked=asked, drawn=drawn, slab=slab)
+    place.write_text(text, encoding="utf-8")
     return place
 
 
@@ -47,6 +52,7 @@ def render(
     candidates: Sequence[Candidate] = (),
     asked: float = ASKED,
     drawn: Mapping[str, Path] | None = None,
+    slab: Slab | None = None,
 ) -> str:
     """The page of a run as HTML with everything in it: no other file and no network is needed."""
     environment = Environment(
@@ -56,5 +62,5 @@ def render(
         trim_blocks=True,
         lstrip_blocks=True,
     )
-    values = content(candidates or [Candidate(run)], asked, units, drawn)
+    values = content(candidates or [Candidate(run)], asked, units, drawn, slab)
     return environment.get_template(TEMPLATE).render(values)
