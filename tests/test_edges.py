@@ -241,8 +241,9 @@ def test_lengths_of_a_bent_wall_follow_its_inside_face(serving):
 def test_a_cup_in_the_air_has_a_plate_below(cup, serving):
     film = edges.underside_films(cup, serving, on_table=False)["underside"]
     assert film.label == "natural convection, horizontal face + radiation"
-    assert edges.heel_films(cup, Serving(films={"heel": {"correlation": "contact with the table"}}), False)
-    == {}
+    touching = Serving(films={"heel": {"correlation": "contact with the table"}})
+    assert edges.heel_films(cup, touching, on_table=False) == {}
+    assert list(edges.heel_films(cup, touching)) == ["heel"]
 
 
 def test_a_table_of_a_material_warms_from_when_the_cup_stands_there(cup):

@@ -222,5 +222,5 @@ def test_closure_says_what_it_is(name):
 def test_foam_multiplies_what_the_rim_leaves():
     plain, covered = Recessed(films.Shah()), Recessed(films.Shah(), foam=0.2)
     assert covered.mass_flux(70.0, *ROOM) == pytest.approx(0.2 * plain.mass_flux(70.0, *ROOM), rel=1e-14)
-    with pytest.raises(InputError, match="foam factor: 0.0: must be above 0 and up to 1"):
+    with pytest.raises(InputError, match=r"foam factor: 0\.0: must be above 0 and up to 1"):
         Recessed(films.Shah(), foam=0.0)
