@@ -104,11 +104,11 @@ def flags_at(
 
 
 def _off(off: float, bound: float, along: bool) -> Flag:
-    """The difference as a flag; where nothing flows along the wall, its closed-form properties are to blame."""
+    """The difference as a flag; where nothing flows along the wall, its closed forms are to blame."""
     told = f"2-D minus 1-D reaches {off:.2g} K"
     if along:
         return Flag("2-D minus 1-D", off, bound, told)
-    return Flag(PROPERTIES, off, bound, f"{told} with no heat along: {PROPERTIES} of cells")
+    return Flag(PROPERTIES, off, bound, f"{told}, nothing flows along the wall: {PROPERTIES}")
 
 
 def reach_of(cup: Cup, rungs: Ladder) -> float:

@@ -2,8 +2,9 @@
 
 Quadratic elements on the radius (three nodes, Gauss points of order five), nodes shared between solids that
 touch; a contact is a link between two nodes with its own conductance, a gap one element in which that
-conductance is spread evenly, with the heat capacity of its gas. Films and gaps follow the temperatures as they do in the field; nothing runs along the
-wall. The elements are standard: O. C. Zienkiewicz and R. L. Taylor, The Finite Element Method.
+conductance is spread evenly, with the heat capacity of its gas. Films and gaps follow the temperatures as
+they do in the field; nothing runs along the wall. The elements are standard: O. C. Zienkiewicz and R. L.
+Taylor, The Finite Element Method.
 """
 
 from __future__ import annotations

@@ -1,0 +1,123 @@
+"""Facts of the trade about hand estimates: common practice, no source. Each names its wall, films and cup and
+prints cupfem's own figure beside (run pytest with -s). Cups are the shipped ones; the serving is the default
+one: water at 85 degC to 10 mm below the brim, a room of 22 degC at 0.1 m/s, correlations on all edges. And the
+closed forms of flutes and struts between the bounds of any mixture, beside the unit cell.
+"""
+
+import numpy as np
+import pytest
+from shipped import GEOMETRIES
+
+import cupfem
+from cupfem.cup.cells import TEMPERATURE, stand_in
+from cupfem.estimates import (
+    ONE_TERM_FOURIER,
+    effective,
+    slab_estimate,
+    station,
+    steady,
+    time_scales,
+    wiener_bounds,
+)
+from cupfem.serving import Serving
+from cupfem.unit_cell import cavity_conductivity, effective_layer
+
+COMFORT = 40.0
+WALLS = {
+    "double_wall": ("three materials: board 0.33 / air 1.0 / board 0.30 mm, 95 mm tall", 0.0475),
+    "strut_wall": ("struts: board 0.33 / chambers 1.5 mm / board 0.30 mm, 95 mm tall", 0.0475),
+    "fluted_wrap": ("flutes: board 0.33 / E flute 1.2 mm / liner 0.18 mm, 95 mm tall", 0.0475),
+}
+
+
+def cup(name):
+    return cupfem.load_cup(GEOMETRIES / f"{name}.toml")
+
+
+def slab_of(name, serving=None):
+    """The series of the wall at mid-height, its inner face held at the drink's temperature."""
+    return slab_estimate(station(cup(name), serving or Serving(), WALLS[name][1]))
+
+
+@pytest.mark.parametrize("name", WALLS)
+def test_board_walls_have_time_scales_of_tens_of_seconds_and_reach_40_degrees_within_them(name):
+    """The trade's fact is of the order of tens of seconds for both; these walls reach 40 degC sooner."""
+    slab = slab_of(name)
+    reached = slab.time_to(COMFORT)
+    print(f"{WALLS[name][0]}: L2/alpha {slab.wall.time_scale:.1f} s, 40 degC outside after {reached:.1f} s")
+    assert 10.0 < slab.wall.time_scale < 100.0
+    assert 1.0 < reached < 0.5 * slab.wall.time_scale
+
+
+@pytest.mark.parametrize("name", WALLS)
+def test_one_term_needs_a_fourier_number_of_a_fifth(name):
+    slab = slab_of(name)
+    early, late = slab.wall.time_scale * np.array([0.25, 1.0]) * ONE_TERM_FOURIER
+    off = [float(np.abs(slab.outside(at, 1) - slab.outside(at))) for at in (early, late)]
+    print(f"{WALLS[name][0]}: one term off by {off[0]:.1f} K at Fo 0.05, {off[1]:.2f} K at Fo 0.2")
+    assert off[0] > 3.0
+    assert off[1] < 0.02 * (85.0 - 22.0)
+
+
+@pytest.mark.parametrize(("name", "height"), [("single_board", 0.0475), ("stoneware_mug", 0.046)])
+def test_a_constant_drink_is_sound_only_while_the_wall_is_much_faster_than_the_drink(name, height):
+    """Beyond a few per cent of the drink's time scale the drink drops by kelvins while the wall warms."""
+    scales = time_scales(cup(name), Serving())
+    print(f"{name}: wall {scales.wall:.1f} s, drink {scales.drink:.0f} s, ratio {scales.ratio:.2%}, "
+          f"drink drops {scales.drop:.2f} K over the wall's time")  # fmt: skip
+    assert (scales.drop > 1.0) == (scales.ratio > 0.02)
+
+
+def test_stoneware_and_board_lie_on_both_sides_of_that():
+    ratios = {name: time_scales(cup(name), Serving()).ratio for name in ("single_board", "felt_sleeved")}
+    print(ratios)
+    assert ratios["single_board"] < 0.01 < ratios["felt_sleeved"]
+
+
+def test_radiation_may_not_be_dropped_in_a_cold_room():
+    """The double wall in a room of 5 degC, still air: steady network with and without radiation outside."""
+    serving = Serving(room={"temperature": "5 degC", "air_speed": "0 m/s"})
+    place = station(cup("double_wall"), serving, 0.0475)
+    whole = steady(place)
+    films = {name: film for name, film in place.outer.films.items() if "radiation" not in name}
+    without = steady(type(place)(**{**vars(place), "outer": type(place.outer)(films, 5.0)}))
+    surface = float(whole.temperature[-1])
+    radiated = place.outer.films["outside radiation"].heat_flux(surface, 5.0, place.height, 0.0)
+    share = float(radiated) / whole.outer_heat_flux
+    rise = float(without.temperature[-1]) - surface
+    print(f"radiation is {share:.0%} of the heat outside; without it the wall is {rise:.1f} K hotter")
+    assert 0.3 < share < 0.7
+    assert rise > 5.0
+
+
+@pytest.mark.parametrize(("name", "layer"), [("strut_wall", "chambers"), ("fluted_wrap", "waves")])
+def test_closed_forms_of_cells_lie_between_the_bounds_and_beside_the_unit_cell(name, layer):
+    """Bounds: O. Wiener, 1912 (series, parallel), from the cell's shares of board and of air with radiation.
+
+    The closed form takes heat straight through the cell; the cell itself lets it spread.
+    """
+    drawn = cup(name)
+    found = next(each for each in drawn.layer if each.name == layer)
+    board, cell = drawn.material(found.material), found.strut or found.flute
+    closed = stand_in(board, cell).conductivity_through.value
+    air = float(cavity_conductivity(found.thickness, TEMPERATURE, board.emissivity.value))
+    still = float(cavity_conductivity(0.0, TEMPERATURE, board.emissivity.value))
+    best = max(board.conductivity_along.value, board.conductivity_through.value)
+    low, _ = wiener_bounds([cell.share, 1.0 - cell.share], [board.conductivity_through.value, still])
+    _, high = wiener_bounds([cell.share, 1.0 - cell.share], [best, air])
+    solved = float(effective_layer(drawn, found).through(np.array([TEMPERATURE]))[0])
+    print(
+        f"{name}: closed form {closed:.4f}, unit cell {solved:.4f}, bounds {low:.4f} and {high:.4f} W/(m K)"
+    )
+    assert low < closed <= high * (1.0 + 1e-9)
+    assert low < solved < high
+    assert closed == pytest.approx(solved, rel=0.15)
+
+
+def test_an_effective_slab_of_a_cell_wall_is_slower_than_its_boards_alone():
+    slab, place = slab_of("strut_wall"), station(cup("strut_wall"), Serving(), 0.0475)
+    boards = [layer for layer in place.layers if layer.name != "chambers"]
+    alone = sum(layer.thickness for layer in boards) ** 2 * boards[0].heat_capacity / boards[0].conductivity
+    whole = effective(place, steady(place).temperature.tolist())
+    assert whole.time_scale == pytest.approx(slab.wall.time_scale, rel=0.02)
+    assert whole.time_scale > 3.0 * alone
