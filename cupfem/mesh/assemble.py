@@ -142,7 +142,7 @@ class Assembler:
 
     def mesh(self) -> SectionMesh:
         cells = np.concatenate(self.cells, axis=1)
-        grid = MeshQuad(self.vertices, cells, sort_t=False, validate=False)
+        grid = MeshQuad(np.ascontiguousarray(self.vertices), cells, sort_t=False, validate=False)
         rank, element_dofs, points, coordinates = self._number_unknowns(grid)
         facet_of = _FacetIndex(grid, rank, self.order, self._facet_dofs)
         regions = self._regions()
