@@ -77,15 +77,18 @@ def _folder(plan: str, out: str | None) -> Path:
 
 def _write(outcome: Outcome, plan: Plan, folder: Path, parquet: bool) -> str:
     from cupfem.figures.vary import write_outcome_figures
+    from cupfem.report.outcome import write_outcome
     from cupfem.vary import write_csv, write_parquet
     from cupfem.vary.text import outcome_text
 
     write_csv(outcome, folder / "cases.csv")
     if parquet:
         write_parquet(outcome, folder / "cases.parquet")
-    text = outcome_text(outcome, None if plan.best is None else plan.best.aim)
+    aim = None if plan.best is None else plan.best.aim
+    text = outcome_text(outcome, aim)
     (folder / "outcome.txt").write_text(text, encoding="utf-8")
     write_outcome_figures(outcome, folder)
+    write_outcome(outcome, folder / "outcome.html", aim)
     return text
 
 

@@ -91,7 +91,7 @@ def sobol_figure(outcome: Outcome, key: str) -> Figure:
 
 def front_figure(outcome: Outcome, x: str, y: str, senses: tuple[Sense, Sense] = ("least", "most")) -> Figure:
     """One figure against another: each case by its verdict, and the cases that no other beats in both."""
-    notes = " / ".join(note for note in (_note(outcome, x), _note(outcome, y)) if note)
+    notes = " / ".join(dict.fromkeys([_note(outcome, x), _note(outcome, y)]))
     figure = style.new_figure(8.0, 5.0, f"{outcome.title}: {words(y)} against {words(x)}", notes)
     axes = style.add_axes(figure, 0.8, 0.85, 0.3, 0.85)
     across, up, verdicts = outcome.figure(x), outcome.figure(y), np.array(outcome.verdicts())

@@ -35,7 +35,7 @@ def outcome_text(outcome: Outcome, aim: tuple[str, Sense] | None = None) -> str:
         recorded.
     """
     lines = [outcome.title, f"{len(outcome)} cases, {len(outcome.errors)} failed", *_first_error(outcome)]
-    lines += ["", *_limits(outcome), "", *_figures(outcome)]
+    lines += ["", *_limits(outcome), "", *_aligned(figure_table(outcome))]
     for key in outcome.recorded:
         lines += _movers(outcome, key)
     key, sense = aim or (outcome.recorded[0], "least")
@@ -58,7 +58,8 @@ def _limits(outcome: Outcome) -> list[str]:
     return [*lines, f"cases: {told}"]
 
 
-def _figures(outcome: Outcome) -> list[str]:
+def figure_table(outcome: Outcome) -> list[Sequence[str]]:
+    """Heads, then for each recorded figure its least, mean and most, and what has to be said beside them."""
     rows: list[Sequence[str]] = [("figure", "least", "mean", "most", "")]
     for key in outcome.recorded:
         values = outcome.figure(key)
@@ -66,7 +67,13 @@ def _figures(outcome: Outcome) -> list[str]:
         if len(known):
             told = [f"{value:.4g}" for value in (known.min(), known.mean(), known.max())]
             rows.append((key, *told, outcome.note(key)))
-    return _aligned(rows)
+    return rows
+
+
+def best_table(outcome: Outcome, key: str, sense: Sense) -> list[Sequence[str]]:
+    """Heads, then the best cases that keep the limits: what varied, what came out."""
+    heads = ["case", *(varied.heading for varied in outcome.varied), *outcome.recorded]
+    return [heads, *(_cells(outcome, row) for row in best_rows(outcome, key, sense, BEST))]
 
 
 def _movers(outcome: Outcome, key: str) -> list[str]:
@@ -93,14 +100,13 @@ def _movers(outcome: Outcome, key: str) -> list[str]:
 
 
 def _best(outcome: Outcome, key: str, sense: Sense) -> list[str]:
-    rows = best_rows(outcome, key, sense, BEST)
-    if not rows:
+    rows = best_table(outcome, key, sense)
+    if len(rows) == 1:
         return [f"no case {'keeps the limits' if outcome.goals else 'ran'}"]
-    heads = ["case", *(varied.heading for varied in outcome.varied), *outcome.recorded]
     kept = " that keep the limits" if outcome.goals else ""
     count = outcome.verdicts().count(PASSED)
-    told = f"the {len(rows)} of {count} cases{kept} with the {sense} {key}:"
-    return [told, *_aligned([heads, *(_cells(outcome, row) for row in rows)])]
+    told = f"the {len(rows) - 1} of {count} cases{kept} with the {sense} {key}:"
+    return [told, *_aligned(rows)]
 
 
 def _cells(outcome: Outcome, row: Row) -> list[str]:
