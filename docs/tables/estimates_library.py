@@ -5,7 +5,6 @@ Run it with ``python docs/tables/estimates_library.py``; it takes a minute or tw
 
 from __future__ import annotations
 
-import csv
 import math
 from pathlib import Path
 
@@ -18,13 +17,13 @@ OTHER_KINDS = ("serving", "sleeve", "plan", "section", "profile")
 """First words of the file names that are no cups."""
 HEAD = """# Every cup by every rung
 
-Written by `docs/tables/estimates_library.py` with version {version}: each shipped cup with the default serving (water at 85 degC
-to 10 mm below the brim, a room of 22 degC, 10 minutes), at the station nearest to mid-wall that is one-dimensional
-(where none is: nearest to mid-wall, marked \\*). Errors are estimate minus field; "none" where the field or the estimate never
-gets there, "=" where neither does. The rungs are those of {{doc}}`../theory/estimates`.
+Written by `docs/tables/estimates_library.py`, version {version}: each shipped cup with the default serving
+(water at 85 degC to 10 mm below the brim, a room of 22 degC, 10 minutes), at the station nearest to mid-wall
+that is one-dimensional (where none is: nearest to mid-wall, marked \\*). Errors are estimate minus field; "none"
+where one of the two never gets there, "=" where neither does. The rungs are those of {{doc}}`../theory/estimates`.
 
-An estimate for comparing designs, not a safety certificate: test real cups; local codes and qualified people decide; spilled
-drink scalds whatever the wall does.
+An estimate for comparing designs, not a safety certificate: test real cups; local codes and qualified people
+decide; spilled drink scalds whatever the wall does.
 """
 
 
@@ -45,7 +44,8 @@ def compared() -> dict[str, Slab]:
 
 def table(slabs: dict[str, Slab], title: str, field: str, error: str) -> list[str]:
     """One table: the field's time [s] and the error of each rung."""
-    lines = [f"## {title} [s]", "", f"| cup | station | field | {' | '.join(RUNGS)} |", "|---" * (3 + len(RUNGS)) + "|"]
+    heads = f"| cup | station | field | {' | '.join(RUNGS)} |"
+    lines = [f"## {title} [s]", "", heads, "|---" * (3 + len(RUNGS)) + "|"]
     for name, slab in slabs.items():
         place = slab.reference
         mark = "" if place in slab.plain else r" \*"
@@ -61,16 +61,17 @@ def worst(slabs: dict[str, Slab]) -> list[str]:
     lines = [
         "## 2-D minus 1-D",
         "",
-        "Rung d behind the field's own drink. Shares of wall and time within 1, 2 and 5 K; largest error of rung d at the "
-        "station; the rung that is good enough (outer wall within 2 K) for longest.",
+        "Shares of wall and time within 1, 2 and 5 K, of rung d behind the field's own drink; largest error of",
+        "rung d, with its own drink, at the station; the rung that is good enough (within 2 K) for longest.",
         "",
-        "| cup | 1 K | 2 K | 5 K | rung d [K] | L2/alpha [s] | Bi outside | good enough | from [s] | to [s] |",
+        "| cup | 1 K | 2 K | 5 K | rung d [K] | L2/alpha [s] | Bi outside | good | from [s] | to [s] |",
         "|---" * 10 + "|",
     ]
     for name, slab in slabs.items():
         place, found = slab.reference, slab.verdict()
         shares = " | ".join(f"{100 * slab.map.within(bound):.0f} %" for bound in (1.0, 2.0, 5.0))
-        rung, since, until = ("none", "", "") if found is None else (found[0], f"{found[1]:.3g}", f"{found[2]:.3g}")
+        rung = "none" if found is None else found[0]
+        since, until = ("", "") if found is None else (f"{time:.3g}" for time in found[1:])
         rungs = slab.rungs[place]
         numbers = f"{slab.error('d', place).worst:.2g} | {rungs.wall.time_scale:.3g} | {rungs.outer_biot:.2g}"
         lines.append(f"| {name} | {shares} | {numbers} | {rung} | {since} | {until} |")
@@ -88,22 +89,13 @@ def _error(known: float, value: float, error: float) -> str:
 
 
 def write(slabs: dict[str, Slab]) -> None:
-    """The page, and the same as CSV."""
-    words = HERE / "estimates_worst.md"
+    """The page."""
     lines = [HEAD.format(version=cupfem.__version__)]
     lines += table(slabs, "Time to 40 degC outside", "comfort", "comfort_error")
     lines += table(slabs, "Hold time, thin skin, picked up at 60 s", "hold", "hold_error")
     lines += worst(slabs)
-    if words.exists():
-        lines += [words.read_text(encoding="utf-8")]
+    lines += [(HERE / "estimates_worst.txt").read_text(encoding="utf-8")]
     (HERE / "estimates_library.md").write_text("\n".join(lines), encoding="utf-8")
-    with (HERE / "estimates_library.csv").open("w", encoding="utf-8", newline="") as file:
-        out = csv.writer(file, lineterminator="\n")
-        for number, (name, slab) in enumerate(slabs.items()):
-            rows = list(csv.reader(slab.csv().splitlines()))
-            if not number:
-                out.writerow(["cup", *rows[0]])
-            out.writerows([name, *row] for row in rows[1:])
 
 
 if __name__ == "__main__":
