@@ -181,7 +181,7 @@ class Drawing:
             "crest_width": mm(self.draw("ridge.crest_width", 0.4, 1.0)),
             "flank_angle": f"{self.draw('ridge.flank_angle', 0, 40)} deg",
         }
-        if self.chance(0.3):
+        if self.chance(0.5):
             ridge["crest"] = "rounded"
         if self.chance(0.5):
             ridge["at"] = [mm(0.44 * self.height), mm(0.44 * self.height + 0.12 * self.height)]
@@ -225,7 +225,7 @@ class Drawing:
                 part()
         parts: list[Callable[[], None]] = [self.fluted, self.loose, self.sleeve, self.ridges]
         number = int(self.random.integers(5))
-        if number < (0 if self.has_hollows else 4):
+        if number < (0 if self.has_hollows else 3 if "inner_profile" in self.data["cup"] else 4):
             parts[number]()
         self.data["layer"] = self.layers
         _count(self.data, "", self.keys)

@@ -29,17 +29,17 @@ THIN_COATING = 60e-6
 def default_stations(meridian: Meridian, fineness: float = 1.0) -> Floats:
     """Heights [m] of the columns: each end of a layer, blend or base is one; in between at most the target
     spacing."""
-    fixed = [meridian.breaks()]
+    fixed, wanted = [meridian.breaks()], [np.zeros(0)]
     cells = max(3, round(BLEND_CELLS * fineness))
     graded = 1.0 - (1.0 - np.arange(cells + 1) / cells) ** 2
     for layer in meridian.layers:
         for low, high in layer.parts:
             if layer.blend_high:
-                fixed.append(high + layer.blend_high * graded)
+                wanted.append(high + layer.blend_high * graded)
             if layer.blend_low:
-                fixed.append(low - layer.blend_low * graded)
+                wanted.append(low - layer.blend_low * graded)
         fixed += _ring_stations(layer, fineness)
-    heights = np.sort(np.concatenate(fixed))
+    heights = np.sort(np.concatenate([*fixed, _off_the_base(meridian, np.concatenate(wanted))]))
     heights = heights[np.concatenate([[True], np.diff(heights) > 1e-7])]
     return _subdivide(meridian, heights, fineness)
 
@@ -76,13 +76,21 @@ def _warming_time(layer: LayerBand) -> float:
     return layer.thickness**2 / diffusivity
 
 
+def _off_the_base(meridian: Meridian, heights: Floats) -> Floats:
+    """The heights that do not lie within the base, whose rows they would become."""
+    if meridian.base is None:
+        return heights
+    return heights[(heights < meridian.base.recess) | (heights > meridian.base.top)]
+
+
 def _subdivide(meridian: Meridian, heights: Floats, fineness: float) -> Floats:
     spacing = STATION_SPACING / fineness
     pieces = [heights[:1]]
     for low, high in pairwise(heights):
         count = int(np.ceil((high - low) / spacing - 1e-9))
         if meridian.base and low >= meridian.base.recess - 1e-9 and high <= meridian.base.top + 1e-9:
-            count = base_cells(fineness)
+            share = (high - low) / meridian.base.thickness
+            count = round(base_cells(fineness) * share)
         pieces.append(np.linspace(low, high, max(1, count) + 1)[1:])
     return np.concatenate(pieces)
 
