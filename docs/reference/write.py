@@ -1,8 +1,11 @@
-"""Write the page about the keys of the plan file from its schema: ``python docs/reference/write.py``."""
+"""Write the pages about the keys of the files from their schemas: ``python docs/reference/write.py``."""
 
+import re
 from pathlib import Path
 from typing import Any
 
+from cupfem.cup import cup_schema, sleeve_schema
+from cupfem.serving import serving_schema
 from cupfem.vary import plan_schema
 
 HERE = Path(__file__).parent
@@ -21,6 +24,63 @@ def page() -> str:
     for name in ORDER:
         parts += [f"## {TITLES[name]}", schema["$defs"][name]["description"], table(schema["$defs"][name])]
     return "\n\n".join(parts) + "\n"
+
+
+def file_page(title: str, howto: str, schema: dict[str, Any]) -> str:
+    """The page of a file whose tables are told by the titles of its models."""
+    parts = [
+        f"# {title}",
+        f"How to write one: {{doc}}`../howto/{howto}`. JSON Schema: `docs/schemas`.",
+        table(schema),
+    ]
+    for name, told in sorted(schema["$defs"].items(), key=lambda item: place(item[0], schema)):
+        if told.get("properties"):
+            words = " ".join(told.get("description", "").split())
+            parts += [f"## {heading(name, schema)}", words, table(told)]
+    return "\n\n".join(part for part in parts if part) + "\n"
+
+
+def uses(name: str, schema: dict[str, Any]) -> list[tuple[str, str, bool]]:
+    """Where a table is used: owner (empty: the file), key, and whether as one of a list."""
+    found = []
+    for owner, told in [("", schema), *schema["$defs"].items()]:
+        for key, kind in told.get("properties", {}).items():
+            if f"'#/$defs/{name}'" in str(kind):
+                found.append((owner, key, "array" in str(kind.get("type", "")) or "items" in kind))
+    return found
+
+
+def place(name: str, schema: dict[str, Any]) -> tuple[int, int]:
+    """Order of the tables: that of the keys of the file, those within another after it."""
+    keys = list(schema["properties"])
+    for owner, key, _ in uses(name, schema):
+        if not owner:
+            return keys.index(key), 0
+        return place(owner, schema)[0], 1
+    return len(keys), 0
+
+
+def heading(name: str, schema: dict[str, Any]) -> str:
+    """The table as the file writes it, and the kind of one where there are several."""
+    used = uses(name, schema)
+    words = re.sub(r"(?<!^)(?=[A-Z])", " ", name).lower()
+    if not used:
+        return words
+    owner, key, listed = used[0]
+    if owner:
+        above = uses(owner, schema)[0][1]
+        if name.startswith("NamedFilm"):  # the model of a list of names has no name of its own
+            return f"[{above}]: a correlation for {', '.join(dict.fromkeys(key for _, key, _ in used))}"
+        return f"[{above}]: {words}" if above == "films" else f"[{above}.{key}]"
+    return f"[[{key}]]" + ("" if words == key else f": {words}") if listed else f"[{key}]"
+
+
+PAGES = {
+    "cup_file": lambda: file_page("The cup file", "cup_file", cup_schema()),
+    "sleeve_file": lambda: file_page("The sleeve file", "sleeve", sleeve_schema()),
+    "serving_file": lambda: file_page("The serving file", "serving_file", serving_schema()),
+    "plan_file": page,
+}
 
 
 def table(schema: dict[str, Any]) -> str:
@@ -60,4 +120,5 @@ def shown(default: Any) -> str:
 
 
 if __name__ == "__main__":
-    (HERE / "plan_file.md").write_text(page(), encoding="utf-8")
+    for name, text in PAGES.items():
+        (HERE / f"{name}.md").write_text(text(), encoding="utf-8")
