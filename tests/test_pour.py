@@ -40,12 +40,12 @@ def test_snapshots_and_series_tell_the_same():
 
 
 def test_the_companion_tells_the_space_error():
-    """A run of twice the fineness differs by less than twice what was told, plus the time's error."""
+    """A run of twice the fineness differs by less than what was told, plus the time's error."""
     run, finer = poured(), poured(fineness=2.0, companion=False)
     told = run.space_errors["outer_end_max_degC"]
     difference = abs(run.figures()["outer_end_max_degC"] - finer.figures()["outer_end_max_degC"])
-    assert 0.0 < told < 0.1
-    assert difference < 2 * told + run.time_error
+    assert 0.0 < told < 0.2
+    assert difference < told + run.time_error
     assert not poured(companion=False).space_errors
 
 

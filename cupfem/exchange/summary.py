@@ -13,6 +13,7 @@ import numpy as np
 from numpy.typing import NDArray
 
 from cupfem.run import CAUTION, FREE_WALL, PadField, Run
+from cupfem.run.error_bars import worst_temperature
 from cupfem.run.headline import Verdict, uncertainty_lines, verdicts
 from cupfem.run.touched import HoldFigures
 from cupfem.touch.felt import pad_verdict
@@ -126,8 +127,19 @@ def _verdict(verdict: Verdict) -> dict[str, Any]:
 
 
 def _numerical(run: Run) -> dict[str, Any]:
-    space = {f"{name.removesuffix('_degC')}_K": error for name, error in run.space_errors.items()}
-    return {"time_K": run.time_error, "space": space}
+    told: dict[str, Any] = {"time_K": run.time_error, "space": _errors(run.space_errors)}
+    told["plus_minus"] = _errors(run.error_bars())
+    if run.accuracy is not None:
+        told |= {"asked_K": run.accuracy, "met": sum(worst_temperature(run)) <= run.accuracy}
+    return told
+
+
+def _errors(errors: Mapping[str, float]) -> dict[str, float]:
+    """Errors by the figure's name: of a temperature in kelvins, of a time in seconds."""
+    return {
+        name if name.endswith("_s") else f"{name.removesuffix('_degC')}_K": error
+        for name, error in errors.items()
+    }
 
 
 def _model(run: Run) -> list[str]:

@@ -9,6 +9,7 @@ import numpy as np
 from numpy.typing import NDArray
 
 from cupfem.cup import Cup
+from cupfem.errors import InputError
 from cupfem.films import Film
 from cupfem.inputs import defaults_used
 from cupfem.march import March
@@ -17,6 +18,7 @@ from cupfem.pour.ranges import ranges_reached
 from cupfem.pour.record import Recorder, series_times, snapshot_times
 from cupfem.problem import Problem, build
 from cupfem.run import Run, faces_of
+from cupfem.run.error_bars import LEAST, space_errors, worst_temperature
 from cupfem.serving import Serving
 from cupfem.touch.verdict import verdict
 
@@ -27,10 +29,10 @@ TOLERANCE = 5e-3
 0.01 K."""
 COMPANION = 0.5
 """Fineness of the companion run that estimates the space error, relative to the run's."""
-COMPANION_GAIN = 3.0
-"""Factor by which the error falls from the companion to the run at the least (second order; the elements'
-own is higher)."""
-TEMPERATURES = ("drink_end_degC", "outer_max_degC", "outer_end_max_degC")
+MOST_FINER, LEAST_TOLERANCE = 4.0, 1e-5
+"""How far an asked accuracy is pursued: four times the fineness is sixteen times the cells."""
+LESS = 0.1
+"""Factor on the tolerance where the time error is too large."""
 
 
 def pour(
@@ -42,6 +44,7 @@ def pour(
     films: Mapping[str, Film] | None = None,
     companion: bool = True,
     hold: bool | None = None,
+    accuracy: float | None = None,
     progress: Callable[[float], None] | None = None,
 ) -> Run:
     """Run a serving.
@@ -59,6 +62,9 @@ def pour(
         Run a coarser companion too, from which the space error is told.
     hold:
         Judge how long the cup can be held; left out: with a companion, with pads, or with a target for it.
+    accuracy:
+        Largest numerical error of the temperatures among the headline figures [K]. Fineness and tolerance are
+        then the first ones to be tried, and made finer until it is met; the run says if it could not.
     progress:
         Called with the time [s] after each step.
 
@@ -71,12 +77,47 @@ def pour(
     """
     serving = serving or Serving()
     films = dict(films or {})
-    run = _march(cup, serving, films, fineness, tolerance, progress)
-    coarse = _march(cup, serving, films, fineness * COMPANION, tolerance, None) if companion else None
+
+    def march(fineness: float, tolerance: float, tell: Callable[[float], None] | None = None) -> Run:
+        return _march(cup, serving, films, fineness, tolerance, tell)
+
+    coarse: Run | None
+    if accuracy is not None:
+        run, coarse = _to_accuracy(march, fineness, tolerance, _positive(accuracy))
+    else:
+        run = march(fineness, tolerance, progress)
+        coarse = march(fineness * COMPANION, tolerance) if companion else None
     asked = serving.target is not None and serving.target.hold_time is not None
     if companion or serving.pad or asked if hold is None else hold:
         run = replace(run, touch=verdict(run, coarse))
-    return run if coarse is None else run.with_space_errors(_space_errors(run, coarse))
+    return run if coarse is None else _with_space_errors(run, coarse)
+
+
+def _positive(accuracy: float) -> float:
+    if not 0.0 < accuracy < np.inf:
+        raise InputError("accuracy", f"{accuracy:g} K", "must be more than zero", "write for example 0.1")
+    return accuracy
+
+
+def _to_accuracy(
+    march: Callable[[float, float], Run], fineness: float, tolerance: float, accuracy: float
+) -> tuple[Run, Run]:
+    """The first run whose temperatures are as exact as asked, or the finest that was tried; its companion."""
+    finest = MOST_FINER * fineness
+    coarse, run = march(fineness * COMPANION, tolerance), march(fineness, tolerance)
+    while True:
+        space, time = worst_temperature(_with_space_errors(run, coarse))
+        if space + time <= accuracy or accuracy <= LEAST:
+            break
+        if time > max(0.5 * accuracy, LEAST) and tolerance > LEAST_TOLERANCE:
+            tolerance *= LESS
+            coarse, run = march(fineness * COMPANION, tolerance), march(fineness, tolerance)
+        elif fineness < finest:
+            fineness /= COMPANION
+            coarse, run = run, march(fineness, tolerance)
+        else:
+            break
+    return replace(run, accuracy=accuracy), coarse
 
 
 def _march(
@@ -154,11 +195,5 @@ def _sip(problem: Problem, state: Floats, time: float, recorder: Recorder) -> Fl
     return state
 
 
-def _space_errors(run: Run, coarse: Run) -> dict[str, float]:
-    fine, other = run.figures(), coarse.figures()
-    errors = {}
-    for name in TEMPERATURES:
-        a, b = fine[name], other[name]
-        if a is not None and b is not None:
-            errors[name] = abs(a - b) / COMPANION_GAIN
-    return errors
+def _with_space_errors(run: Run, coarse: Run) -> Run:
+    return run.with_space_errors(space_errors(run.figures(), coarse.figures(), run.serving.duration))

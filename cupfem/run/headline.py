@@ -9,6 +9,7 @@ import numpy as np
 from numpy.typing import NDArray
 
 from cupfem.quantities import Units, format_quantity
+from cupfem.run.error_bars import error_bars, worst_temperature
 
 if TYPE_CHECKING:
     from cupfem.run.result import Run
@@ -140,18 +141,20 @@ def text(run: Run, units: Units = "si") -> str:
 def rows(run: Run, told: dict[str, float | None], units: Units = "si") -> list[tuple[str, str]]:
     """Rows of the table of headline figures: what, and value with unit."""
     end = run.serving.duration
-    error = run.space_errors
+    error = error_bars(run)
 
     def temperature(key: str) -> str:
         value = told[key]
         if value is None or np.isnan(value):
             return "none left"
         shown = format_quantity(value, "temperature", units, digits=3 if abs(value) < 100 else 4)
-        return shown + _plus_minus(error.get(key), run.time_error, units)
+        return shown + _plus_minus(error.get(key), "K", units)
 
     def seconds(key: str) -> str:
         value = told[key]
-        return f"not within {end:g} s" if value is None else f"{value:.3g} s"
+        if value is None:
+            return f"not within {end:g} s"
+        return f"{value:.3g} s" + _plus_minus(error.get(key), "s", units)
 
     return [
         (f"drink after {end:g} s", temperature("drink_end_degC")),
@@ -174,22 +177,23 @@ def _place(told: dict[str, float | None], units: Units) -> str:
     return f"{told['outer_max_time_s']:.3g} s, {height}"
 
 
-def _plus_minus(space: float | None, time: float, units: Units) -> str:
-    if space is None:
+def _plus_minus(error: float | None, unit: str, units: Units) -> str:
+    if error is None:
         return ""
-    scale, unit = (1.8, "degF") if units == "us" else (1.0, "K")
-    return f" +- {scale * (space + time):.1g} {unit}"
+    if unit == "K" and units == "us":
+        return f" +- {1.8 * error:.1g} degF"
+    return f" +- {error:.1g} {unit}"
 
 
 def uncertainty_lines(run: Run) -> list[str]:
     """Numerical and model uncertainty, apart."""
-    space = max(run.space_errors.values(), default=float("nan"))
-    numerical = f"numerical: time {run.time_error:.1g} K (embedded), space {space:.1g} K (coarser companion)"
-    lines = [
-        numerical
-        if run.space_errors
-        else f"numerical: time {run.time_error:.1g} K (embedded); space not estimated"
-    ]
+    space, time = worst_temperature(run)
+    told = f"space {space:.1g} K (coarser companion)" if run.space_errors else "space not estimated"
+    lines = [f"numerical: time {run.time_error:.1g} K (embedded), {told}"]
+    if run.accuracy is not None:
+        reached = f"{space + time:.1g} K at fineness {run.fineness:g}, tolerance {run.tolerance:.1g} K"
+        word = "met" if space + time <= run.accuracy else "NOT met"
+        lines.append(f"numerical: accuracy {run.accuracy:g} K {word}: {reached}")
     lines.append("model: inputs and physics left out; see the sources of each property")
     if any(layer.material.surface_class == "board" for layer in run.meridian.layers):
         lines.append(f"model: {MOISTURE}")

@@ -19,6 +19,7 @@ from cupfem.meridian import Meridian
 from cupfem.mesh import SectionMesh
 from cupfem.quantities import Units
 from cupfem.run import headline
+from cupfem.run.error_bars import error_bars
 from cupfem.run.pads import PadField
 from cupfem.run.touched import HoldFigures
 from cupfem.serving import Serving
@@ -126,6 +127,8 @@ class Run:
     """What the serving's pads felt."""
     touch: HoldFigures | None = None
     """How long the cup can be held, where that was asked for."""
+    accuracy: float | None = None
+    """Numerical error of the temperatures [K] that was asked for."""
 
     @property
     def time(self) -> Floats:
@@ -145,12 +148,16 @@ class Run:
         return np.asarray(self.snapshots[int(np.argmin(np.abs(self.snapshot_times - time)))])
 
     def with_space_errors(self, errors: Mapping[str, float]) -> Run:
-        """The same run with its space errors told, by key of `figures` [K]."""
+        """The same run with its space errors told, by key of `figures` [K or s]."""
         return replace(self, space_errors=dict(errors))
 
     def figures(self) -> dict[str, float | None]:
         """Headline figures, unit in the key."""
         return headline.figures(self)
+
+    def error_bars(self) -> dict[str, float]:
+        """Numerical errors of the figures, by key of `figures` [K or s]; empty without a companion."""
+        return error_bars(self)
 
     def summary(self, units: Units = "si") -> str:
         """Headline figures, verdict and cautions as text."""

@@ -84,6 +84,7 @@ def load_run(folder: str | Path) -> Run:
         space_errors=told["space_errors"],
         defaults=tuple(told["defaults"]),
         ranges=tuple(told["ranges"]),
+        accuracy=told.get("accuracy"),
         touch=None if told["touch"] is None else HoldFigures(**told["touch"]),
         pads=pads_from(arrays, serving.pad),
         films={edge: LostFilm(edge) for edge in told["films"]},
@@ -109,6 +110,7 @@ def _arrays(run: Run) -> dict[str, Floats]:
         "to_drink": ledger.to_drink,
     }
     told |= {"counters": dict(run.counters), "space_errors": dict(run.space_errors)}
+    told["accuracy"] = run.accuracy
     told |= {"defaults": list(run.defaults), "ranges": list(run.ranges), "films": list(run.films)}
     told["touch"] = None if run.touch is None else asdict(run.touch)
     return arrays | pad_arrays(run.pads) | {"told": np.array(json.dumps(told))}
