@@ -51,6 +51,14 @@ class Rings:
         inside = (height >= low - 1e-12) & (height <= high + 1e-12)
         return np.where(inside, (2.0 * height - low - high) / (high - low), np.nan)
 
+    def places(self, cells: int) -> Floats:
+        """Places from -1 to 1 that divide a ring into cells: evenly, or along the arc of a rounded crest."""
+        even = np.linspace(-1.0, 1.0, cells + 1)
+        if np.isinf(self.crest_radius):
+            return even
+        opening = np.arcsin(self.half_crest / self.crest_radius)
+        return np.asarray(np.sin(opening * even) / np.sin(opening))
+
     def thickness(self, height: Floats, full: float) -> Floats:
         """Height of the ridge [m] over its foot; none between the rings."""
         place = self.place(height)

@@ -48,9 +48,9 @@ def _ring_stations(layer: LayerBand, fineness: float) -> list[Floats]:
     """Heights [m] across the feet of ridges."""
     if layer.rings is None:
         return []
-    cells = max(2, round(RING_CELLS * fineness))
+    places = layer.rings.places(max(2, round(RING_CELLS * fineness)))
     pairs = zip(layer.rings.low, layer.rings.high, strict=True)
-    return [np.linspace(low, high, cells + 1) for low, high in pairs]
+    return [0.5 * (low + high) + 0.5 * (high - low) * places for low, high in pairs]
 
 
 def default_fractions(meridian: Meridian, fineness: float = 1.0) -> dict[str, Floats]:
