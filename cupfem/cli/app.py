@@ -46,6 +46,13 @@ Against = Annotated[
     list[str] | None,
     typer.Option(metavar="CUP", help="A further cup to set beside, in the same serving; up to five times."),
 ]
+Accuracy = Annotated[
+    str | None,
+    typer.Option(
+        metavar="DIFFERENCE",
+        help='Refine mesh and steps until the temperatures are this exact numerically, such as "0.1 K".',
+    ),
+]
 UnitSystem = Annotated[
     Literal["si", "us"], typer.Option(help="us: degF, inches, fluid ounces in tables and pictures.")
 ]
@@ -100,6 +107,7 @@ def pour(
     quiet: Quiet = False,
     duration: Duration = None,
     fineness: Fineness = 1.0,
+    accuracy: Accuracy = None,
     units: UnitSystem = "si",
     report: Report = False,
     against: Against = None,
@@ -115,6 +123,7 @@ def pour(
         quiet=quiet,
         duration=duration,
         fineness=fineness,
+        accuracy=accuracy,
         units=units,
         report=report,
         against=against or (),

@@ -18,13 +18,13 @@ from cupfem.cli.outcome import asked_of, brief_map, write_pictures
 from cupfem.cli.show import show_against, show_drawing, show_folder, show_hold, show_run
 from cupfem.cup import Cup, load_cup
 from cupfem.drawing import Drawing, survey
-from cupfem.errors import ConvergenceError
+from cupfem.errors import ConvergenceError, InputError
 from cupfem.exchange import check_place, write_incomplete, write_run
 from cupfem.exchange.place import write_numbered, write_whole
 from cupfem.hold import hold
 from cupfem.inputs import resolved_toml
 from cupfem.pour import pour
-from cupfem.quantities import Units
+from cupfem.quantities import Units, parse_quantity
 from cupfem.run import Run
 from cupfem.serving import Serving, load_serving
 
@@ -73,6 +73,7 @@ def pour_cup(
     quiet: bool,
     duration: str | None,
     fineness: float,
+    accuracy: str | None,
     units: Units,
     report: bool,
     against: Sequence[str],
@@ -81,10 +82,11 @@ def pour_cup(
     started = time.perf_counter()
     check_number(against)
     cups, serving = [load_cup(each) for each in (path, *against)], serving_of(serving_path, duration)
+    kelvins = None if accuracy is None else accuracy_of(accuracy)
     if out is not None:
         check_place(out, force)
     loaded = time.perf_counter()
-    candidates = [Candidate(run_of(cup, serving, fineness, out, quiet, COMMAND)) for cup in cups]
+    candidates = [Candidate(run_of(cup, serving, fineness, out, quiet, COMMAND, kelvins)) for cup in cups]
     poured = time.perf_counter()
     if report:
         candidates = [Candidate(each.run, brief_map(each.run)) for each in candidates]
@@ -150,11 +152,27 @@ def serving_of(path: str | None, duration: str | None) -> Serving:
     return Serving(**{**given, "duration": duration})
 
 
-def run_of(cup: Cup, serving: Serving, fineness: float, out: str | None, quiet: bool, name: str) -> Run:
+def accuracy_of(text: str) -> float:
+    """An asked accuracy [K]; InputError for what is none."""
+    try:
+        return parse_quantity(text, "temperature_difference")
+    except InputError as error:
+        raise InputError("accuracy", text, error.why, 'write it as in "0.1 K"') from None
+
+
+def run_of(
+    cup: Cup,
+    serving: Serving,
+    fineness: float,
+    out: str | None,
+    quiet: bool,
+    name: str,
+    accuracy: float | None = None,
+) -> Run:
     """The run; one that cannot go on leaves the inputs in a folder of its own."""
     try:
         with _progress(serving.duration, quiet) as tell:
-            return pour(cup, serving, fineness=fineness, progress=tell)
+            return pour(cup, serving, fineness=fineness, accuracy=accuracy, progress=tell)
     except ConvergenceError as error:
         folder = write_incomplete(cup, serving, error, out, name=name)
         raise ConvergenceError(f"{error}; the inputs are in {folder}") from error
