@@ -115,7 +115,9 @@ def nonsense(run: cupfem.Run) -> list[str]:
         if not np.all(np.isfinite(values)):
             told.append(f"{name}: not a number")
         elif values.size and not (values.min() >= low - slack and values.max() <= high + slack):
-            told.append(f"{name}: {values.min():.2f} to {values.max():.2f} degC, bounds {low:.2f}, {high:.2f}")
+            told.append(
+                f"{name}: {values.min():.2f} to {values.max():.2f} degC, bounds {low:.2f}, {high:.2f}"
+            )
     if np.nanmin(series.drink_mass, initial=0.0) < 0.0:
         told.append(f"mass {np.nanmin(series.drink_mass):.3g} kg")
     if abs(run.ledger.residual) > JOULES + LEDGER * abs(run.ledger.drink):

@@ -18,7 +18,7 @@ from pathlib import Path
 
 HERE = Path(__file__).parent
 ROOT = HERE.parents[1]
-CASES = 120
+CASES = 80
 SECONDS = 0.01
 """How long a case takes; two workers take at least CASES * SECONDS / 2."""
 
@@ -140,7 +140,7 @@ def main() -> int:
     for number in range(given.count):
         with tempfile.TemporaryDirectory() as folder:
             attempt = Attempt(Path(folder))
-            moment = moments.uniform(0.0, 0.6)
+            moment = moments.uniform(0.0, 0.4)
             attempt.kill_after(moment)
             attempt.finish()
             faults = attempt.faults()

@@ -35,19 +35,33 @@ WRONG_VALUES = (
 WRONG_KEYS = ("", "handle", "thickness", "temperature", "ü", "a.b", "layer", "material", "from", "cup", "lid")
 
 
+def draw_whole(choose: random.Random) -> tuple[str, str]:
+    """The texts of a cup file and of a serving file, none of them broken and without fingers."""
+    cup, serving = _pair(choose)
+    serving.pop("pad", None)
+    return toml.write(cup), toml.write(serving)
+
+
 def draw(choose: random.Random) -> tuple[str, str]:
     """The texts of a cup file and of a serving file."""
-    cup = _random_cup(choose) if choose.random() < 0.5 else _changed(choose, _shipped(choose, CUPS), _vary_cup)
-    serving = (
-        _random_serving(choose, _height(cup))
-        if choose.random() < 0.6
-        else _changed(choose, _shipped(choose, SERVINGS), _vary_serving)
-    )
+    cup, serving = _pair(choose)
     texts = [toml.write(cup), toml.write(serving)]
     if choose.random() < BROKEN:
         which = choose.randrange(2)
         texts[which] = _broken(choose, (cup, serving)[which])
     return texts[0], texts[1]
+
+
+def _pair(choose: random.Random) -> tuple[Data, Data]:
+    cup = (
+        _random_cup(choose) if choose.random() < 0.5 else _changed(choose, _shipped(choose, CUPS), _vary_cup)
+    )
+    serving = (
+        _random_serving(choose, _height(cup))
+        if choose.random() < 0.6
+        else _changed(choose, _shipped(choose, SERVINGS), _vary_serving)
+    )
+    return cup, serving
 
 
 def _shipped(choose: random.Random, paths: list[Any]) -> Data:
@@ -174,7 +188,11 @@ def _random_serving(choose: random.Random, height: float) -> Data:
 
 
 def _fill(choose: random.Random, height: float) -> Data:
-    kinds: list[Data] = [{}, {"kind": "thick soup"}, {"density": "1000 kg/m^3", "specific_heat": "4180 J/(kg K)"}]
+    kinds: list[Data] = [
+        {},
+        {"kind": "thick soup"},
+        {"density": "1000 kg/m^3", "specific_heat": "4180 J/(kg K)"},
+    ]
     levels: list[Data] = [{}, {"level": _mm(choose.uniform(0.1, 0.99) * height)}, {"volume": "15 ml"}]
     return choose.choice(kinds) | choose.choice(levels) | choose.choice([{}, {}, {"pour": "4 s"}])
 
