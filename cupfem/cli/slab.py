@@ -11,7 +11,10 @@ from cupfem.cli.app import CupFile, Fineness, Force, Out, Quiet, UnitSystem, app
 
 if TYPE_CHECKING:
     from cupfem.breakdown import Slab
+    from cupfem.cup import Cup
     from cupfem.quantities import Units
+    from cupfem.run import Run
+    from cupfem.serving import Serving
 
 
 @app.command(epilog="Example: cupfem slab geometries/double_wall.toml --units us")
@@ -34,13 +37,12 @@ def slab(
     from cupfem.cup import load_cup
     from cupfem.exchange import check_place
     from cupfem.exchange.place import write_numbered, write_whole
-    from cupfem.pour import pour
     from cupfem.serving import Serving, load_serving
 
-    given = load_cup(cup), Serving() if serving is None else load_serving(serving)
+    drawn, given = load_cup(cup), Serving() if serving is None else load_serving(serving)
     if out is not None:
         check_place(out, force)
-    found = compare(pour(*given, fineness=fineness, companion=False, hold=False))
+    found = compare(_march(drawn, given, fineness, out))
 
     def fill(place: Path) -> None:
         _write(found, place, units)
@@ -51,6 +53,19 @@ def slab(
     if not quiet:
         typer.echo(found.table(units))
     show_folder(Console(highlight=False), folder, quiet)
+
+
+def _march(cup: Cup, serving: Serving, fineness: float, out: str | None) -> Run:
+    """The run; one that cannot go on leaves its inputs in a folder of its own."""
+    from cupfem.errors import ConvergenceError
+    from cupfem.exchange import write_incomplete
+    from cupfem.pour import pour
+
+    try:
+        return pour(cup, serving, fineness=fineness, companion=False, hold=False)
+    except ConvergenceError as error:
+        folder = write_incomplete(cup, serving, error, out, name="slab")
+        raise ConvergenceError(f"{error}; the inputs are in {folder}") from error
 
 
 def _write(found: Slab, place: Path, units: Units) -> None:

@@ -19,8 +19,9 @@ HEAD = """# Every cup by every rung
 
 Written by `docs/tables/estimates_library.py`, version {version}: each shipped cup with the default serving
 (water at 85 degC to 10 mm below the brim, a room of 22 degC, 10 minutes), at the station nearest to mid-wall
-that is one-dimensional (where none is: nearest to mid-wall, marked \\*). Errors are estimate minus field; "none"
-where one of the two never gets there, "=" where neither does. The rungs are those of {{doc}}`../theory/estimates`.
+that is one-dimensional (where none is: nearest to mid-wall, marked \\*). Errors are estimate minus field;
+"none" where one of the two never gets there, "=" where neither does. The rungs are those of
+{{doc}}`../theory/estimates`.
 
 An estimate for comparing designs, not a safety certificate: test real cups; local codes and qualified people
 decide; spilled drink scalds whatever the wall does.
@@ -61,10 +62,10 @@ def worst(slabs: dict[str, Slab]) -> list[str]:
     lines = [
         "## 2-D minus 1-D",
         "",
-        "Shares of wall and time within 1, 2 and 5 K, of rung d behind the field's own drink; largest error of",
-        "rung d, with its own drink, at the station; the rung that is good enough (within 2 K) for longest.",
+        "Shares of wall and time within 1, 2 and 5 K, of rung d behind the field's own drink; largest error",
+        "of rung d, with its own drink, at the station; the rung that is good (within 2 K) for longest.",
         "",
-        "| cup | 1 K | 2 K | 5 K | rung d [K] | L2/alpha [s] | Bi outside | good | from [s] | to [s] |",
+        "| cup | 1 K | 2 K | 5 K | rung d [K] | L2/alpha [s] | Bi outside | good | since [s] | to [s] |",
         "|---" * 10 + "|",
     ]
     for name, slab in slabs.items():
