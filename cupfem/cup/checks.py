@@ -64,6 +64,8 @@ def _idle(cup: Cup, layer: Layer) -> Iterator[tuple[str, str]]:
         yield from ((key, "a gas lies close to what is inside it") for key in ("fit", "fit_gap"))
         yield from ((key, "a gas has no faces") for key in ("inner_emissivity", "outer_emissivity"))
         return
+    if layer is cup.layer[0]:
+        yield from ((key, "it is innermost: nothing lies inside it") for key in ("fit", "fit_gap"))
     for key in ("contact_fraction", "contact_conductance", "pressure"):
         yield key, "only a layer of gas has it"
     for face, is_open in zip(("inner", "outer"), _open_faces(cup, layer), strict=True):

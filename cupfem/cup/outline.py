@@ -38,15 +38,15 @@ class Outline(Table):
     """Outside of the wall carried down to the table, instead of inner_foot_diameter."""
     inner_profile: tuple[tuple[Height, Annotated[Length, Positive]], ...] = ()
     """Inside diameters at rising heights, table to brim, instead of the diameters at both ends."""
-    inner_curve: Literal["straight", "spline"] = "straight"
-    """What lies between the points of inner_profile: straight pieces, or a natural cubic spline."""
+    inner_curve: Literal["straight", "spline"] | None = None
+    """What lies between the points of inner_profile: straight (left out), or a natural cubic spline."""
 
     @model_validator(mode="after")
     def _one_shape(self) -> Self:
         if self.inner_profile:
             self._check_profile()
             return self
-        if "inner_curve" in self.model_fields_set and self.inner_curve != "straight":
+        if self.inner_curve is not None:
             raise refused("would change nothing without inner_profile", "leave it out", "inner_curve")
         for inner, outside in (_DIAMETERS[:2], _DIAMETERS[2:]):
             given = [key for key in (inner, outside) if getattr(self, key) is not None]
