@@ -53,6 +53,12 @@ Accuracy = Annotated[
         help='Refine mesh and steps until the temperatures are this exact numerically, such as "0.1 K".',
     ),
 ]
+Log = Annotated[
+    str | None,
+    typer.Option(
+        metavar="FILE", help="A measured log as CSV, drawn over the run: time_s and drink_temperature_degC."
+    ),
+]
 UnitSystem = Annotated[
     Literal["si", "us"], typer.Option(help="us: degF, inches, fluid ounces in tables and pictures.")
 ]
@@ -111,6 +117,7 @@ def pour(
     units: UnitSystem = "si",
     report: Report = False,
     against: Against = None,
+    log: Log = None,
 ) -> None:
     """Run a serving: verdict, table, pictures, series and fields, in one folder."""
     from cupfem.cli.jobs import pour_cup
@@ -127,6 +134,7 @@ def pour(
         units=units,
         report=report,
         against=against or (),
+        log_path=log,
     )
 
 

@@ -14,8 +14,8 @@ from rich.console import Console
 from rich.progress import BarColumn, Progress, TaskProgressColumn, TextColumn
 
 from cupfem.against import Candidate, check_number
-from cupfem.cli.outcome import asked_of, brief_map, write_pictures
-from cupfem.cli.show import show_against, show_drawing, show_folder, show_hold, show_run
+from cupfem.cli.outcome import asked_of, brief_map, write_log, write_pictures
+from cupfem.cli.show import show_against, show_drawing, show_folder, show_hold, show_log, show_run
 from cupfem.cup import Cup, load_cup
 from cupfem.drawing import Drawing, survey
 from cupfem.errors import ConvergenceError, InputError
@@ -26,6 +26,7 @@ from cupfem.inputs import resolved_toml
 from cupfem.pour import pour
 from cupfem.quantities import Units, parse_quantity
 from cupfem.run import Run
+from cupfem.run.log import read_log
 from cupfem.serving import Serving, load_serving
 
 COMMAND, HOLD = "pour", "hold"
@@ -77,10 +78,12 @@ def pour_cup(
     units: Units,
     report: bool,
     against: Sequence[str],
+    log_path: str | None = None,
 ) -> None:
     """Run a serving, write its folder, print the headline figures; beside other cups if there are any."""
     started = time.perf_counter()
     check_number(against)
+    log = None if log_path is None else read_log(log_path)
     cups, serving = [load_cup(each) for each in (path, *against)], serving_of(serving_path, duration)
     kelvins = None if accuracy is None else accuracy_of(accuracy)
     if out is not None:
@@ -95,11 +98,15 @@ def pour_cup(
 
     def pictures(_: Run, place: Path) -> None:
         write_pictures(candidates, place, asked, units, report)
+        if log is not None:
+            write_log(candidates[0].run, log, place, units)
 
     folder = write_run(candidates[0].run, out, name=COMMAND, force=force, figures=pictures, timings=timings)
     console = Console(highlight=False)
     if not quiet:
         show_run(console, candidates[0].run, units)
+        if log is not None:
+            show_log(console, candidates[0].run, log)
         show_against(console, candidates, asked, units)
     show_folder(console, folder, quiet)
 

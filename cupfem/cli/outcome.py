@@ -13,6 +13,7 @@ from cupfem.exchange.summary import summary_json
 from cupfem.inputs import resolved_toml
 from cupfem.quantities import Units, parse_quantity
 from cupfem.run import Run
+from cupfem.run.log import MeasuredLog, misfits
 from cupfem.serving import Serving
 from cupfem.touch.holding import DEFAULT_PAD, Hold, default_heights, default_pick_ups, hold_map
 
@@ -63,6 +64,19 @@ def write_pictures(
             drawn=drawn,
             slab=slab(first.run),
         )
+
+
+def write_log(run: Run, log: MeasuredLog, place: Path, units: Units) -> None:
+    """Picture of a measured log over the run, and how far they are apart."""
+    from cupfem.figures import log_figure, png
+
+    (place / "log.png").write_bytes(png(log_figure(run, log, units)))
+    with (place / "log.csv").open("w", encoding="utf-8", newline="") as file:
+        table = csv.writer(file)
+        table.writerow(["column", "points", "rmse_K", "mean_K", "largest_K"])
+        for misfit in misfits(run, log):
+            numbers = (misfit.root_mean_square, misfit.mean, misfit.largest)
+            table.writerow([misfit.column, misfit.points, *(f"{value:.4g}" for value in numbers)])
 
 
 def _write_against(candidates: Sequence[Candidate], place: Path, asked: float, units: Units) -> None:

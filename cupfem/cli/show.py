@@ -11,8 +11,10 @@ from rich.table import Table
 
 from cupfem.against import Candidate, hold_answers, hold_grounds, hold_heads, hold_rows, side_by_side
 from cupfem.drawing import Drawing
+from cupfem.pour.ranges import LEFT
 from cupfem.quantities import Units
 from cupfem.run import CAUTION, FREE_WALL, Run, headline
+from cupfem.run.log import MeasuredLog, misfits
 
 
 def show_run(console: Console, run: Run, units: Units) -> None:
@@ -26,7 +28,8 @@ def show_run(console: Console, run: Run, units: Units) -> None:
         colour = "green" if verdict.passed else "red"
         console.print(f"[bold {colour}]{escape(headline.verdict_line(verdict, units))}[/bold {colour}]")
     _section(console, "Uncertainty", headline.uncertainty_lines(run))
-    _section(console, "Correlations and their ranges", run.ranges)
+    left = [line.removeprefix(LEFT) for line in run.ranges if line.startswith(LEFT)]
+    _section(console, "Correlations outside their range", left)
     _section(console, "Defaults used", ["; ".join(run.defaults)] if run.defaults else [])
     console.print(f"\n[bold]Caution[/bold]\n{CAUTION}")
 
@@ -54,6 +57,11 @@ def show_against(console: Console, candidates: Sequence[Candidate], asked: float
     console.print("\n[bold]Side by side[/bold]")
     heads = ["", *(each.title for each in candidates)]
     console.print(_table([(what, *cells) for what, cells in side_by_side(candidates, asked, units)], heads))
+
+
+def show_log(console: Console, run: Run, log: MeasuredLog) -> None:
+    """How far the run is from each column of a measured log."""
+    _section(console, "Measured log (run minus log)", [misfit.line() for misfit in misfits(run, log)])
 
 
 def show_drawing(console: Console, drawing: Drawing, units: Units) -> None:

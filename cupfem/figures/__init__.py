@@ -11,6 +11,7 @@ from cupfem.figures.field import field_figure, field_frames, field_times
 from cupfem.figures.files import png, svg, write_drawing, write_figures
 from cupfem.figures.heat import drink_figure, grouped_heats, heat_figure
 from cupfem.figures.hold import hold_figure
+from cupfem.figures.log import log_figure
 from cupfem.figures.section import section_figure
 from cupfem.figures.wall import wall_history, wall_map, wall_profile
 
@@ -24,6 +25,7 @@ __all__ = [
     "grouped_heats",
     "heat_figure",
     "hold_figure",
+    "log_figure",
     "png",
     "section_figure",
     "svg",
