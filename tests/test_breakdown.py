@@ -68,7 +68,9 @@ SHORT = {"title": "Two minutes", "duration": "2 min"}
 
 def poured(name, **serving):
     given = Serving(**{**SHORT, **serving})
-    return pour(cupfem.load_cup(GEOMETRIES / f"{name}.toml"), given, companion=False, hold=False)
+    return pour(
+        cupfem.load_cup(GEOMETRIES / f"{name}.toml"), given, companion=False, hold=False, fineness=0.5
+    )
 
 
 @pytest.fixture(scope="module")
