@@ -10,11 +10,10 @@ from typing import Any
 
 import numpy as np
 from jinja2 import Environment, PackageLoader, StrictUndefined
-from matplotlib.figure import Figure
 
 from cupfem.cup import Cup
 from cupfem.drawing import survey
-from cupfem.figures import png, section_figure
+from cupfem.figures import Figure, png, section_figure
 from cupfem.figures.vary import front_figure, outcome_pictures, words
 from cupfem.run import CAUTION
 from cupfem.vary import Outcome, Row

@@ -4,7 +4,9 @@ from __future__ import annotations
 
 import multiprocessing
 import os
+import signal
 import sys
+import threading
 from collections.abc import Iterator
 from concurrent.futures import Executor, Future, ProcessPoolExecutor
 from concurrent.futures.process import BrokenProcessPool
@@ -66,7 +68,8 @@ class LocalPool:
             context = multiprocessing.get_context(kind)
             context.set_forkserver_preload([PRELOADED])
             self._executor = ProcessPoolExecutor(self._workers, context, start_worker)
-            with _one_thread():  # processes take their environment when they start: all of them do it now
+            # processes take environment and signals as they are when they start: all of them start now
+            with _one_thread(), _deaf_to_ctrl_c():
                 _wait_for([self._executor.submit(os.getpid) for _ in range(self._workers)])
         return self._executor
 
@@ -137,6 +140,19 @@ def _dask_client(address: str) -> Any:
     except (OSError, ValueError, TimeoutError) as problem:
         why = f"no scheduler answers there ({type(problem).__name__})"
         raise InputError("scheduler", address, why, 'write it as in "tcp://192.0.2.1:8786"') from None
+
+
+@contextmanager
+def _deaf_to_ctrl_c() -> Iterator[None]:
+    """Ctrl-C goes to every process of the terminal; what starts here leaves it to the starter from birth."""
+    if threading.current_thread() is not threading.main_thread():
+        yield  # only the main thread may set what a signal does
+        return
+    before = signal.signal(signal.SIGINT, signal.SIG_IGN)
+    try:
+        yield
+    finally:
+        signal.signal(signal.SIGINT, before)
 
 
 @contextmanager
