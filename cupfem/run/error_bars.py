@@ -24,6 +24,8 @@ COMPANION_GAIN = 1.0
 It is 3 for an error of second order and 1 for one of first order, which the level line and the ends of layers
 bring (P. J. Roache, J. Fluids Engineering 116 (1994) 405: Richardson's estimate; from memory, not
 re-checked)."""
+PEAK = 2.0
+"""Factor on the time error where a figure is the hottest of a face: the estimate is a mean over the wall."""
 LEAST = 1e-3
 """Least error that is told [K]: of the dense output and of the iteration within a step."""
 TEMPERATURES = ("drink_end_degC", "outer_max_degC", "outer_end_max_degC")
@@ -55,16 +57,16 @@ def space_errors(fine: Figures, coarse: Figures, duration: float) -> dict[str, f
 
 def error_bars(run: Run) -> dict[str, float]:
     """Error of each figure whose space error is known, in the figure's own unit [K or s]."""
-    in_time = max(run.time_error, LEAST)
     told, bars = run.figures(), {}
     for name, space in run.space_errors.items():
         value = told.get(name)
         if value is None:
             continue
+        in_time = _time_error(run, name)
         if name in TEMPERATURES:
             bars[name] = space + in_time
         elif name == HOTTEST_AT:
-            bars[name] = max(space, _spacing(run.time, value))
+            bars[name] = space + _spacing(run.time, value)
         else:
             bars[name] = min(space + in_time / _rate(run, name, value), max(run.serving.duration, space))
     return bars
@@ -72,8 +74,13 @@ def error_bars(run: Run) -> dict[str, float]:
 
 def worst_temperature(run: Run) -> tuple[float, float]:
     """Largest error of a temperature among the figures, of space and of time [K]."""
-    space = max((run.space_errors.get(name, 0.0) for name in TEMPERATURES), default=0.0)
-    return space, max(run.time_error, LEAST)
+    space = max(run.space_errors.get(name, 0.0) for name in TEMPERATURES)
+    return space, max(_time_error(run, name) for name in TEMPERATURES)
+
+
+def _time_error(run: Run, name: str) -> float:
+    """Of the temperature that a figure is taken from [K]."""
+    return max(run.time_error * (1.0 if name.startswith("drink") else PEAK), LEAST)
 
 
 def _rate(run: Run, name: str, time: float) -> float:
