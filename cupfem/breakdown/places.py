@@ -30,6 +30,8 @@ LATERAL_SHARE = 0.05
 """Share of the heat flux from which on what flows along the wall counts."""
 PROPERTIES = "closed-form properties"
 """Name of the flag of a wall of flutes or struts that the closed forms of its cells do not tell well."""
+LEVEL = "level line"
+"""Name of the flag of the drink's level."""
 SAME = 1e-6  # m
 
 
@@ -43,12 +45,16 @@ class End:
 
 @dataclass(frozen=True)
 class Flag:
-    """Why a station is not one-dimensional, with its number and the limit that it passed."""
+    """Why a station is not one-dimensional, with its number and the limit that it passed.
+
+    `end`: it is an end or the level, whose distance is the number and whose reach the limit [m].
+    """
 
     name: str
     number: float
     limit: float
     text: str
+    end: bool = False
 
 
 def ends_of(run: Run) -> tuple[End, ...]:
@@ -96,7 +102,7 @@ def flags_at(
     height, reach = rungs.station.height, reach_of(run.cup, rungs)
     found = [*_near_ends(height, ends, reach, units), *_near_level(run, height, reach, units)]
     if lateral > LATERAL_SHARE:
-        text = f"flows along the wall: {100 * lateral:.2g} % of what flows through"
+        text = f"flows along the wall: {100 * lateral:.3g} % of what flows through"
         found.append(Flag("lateral flux", lateral, LATERAL_SHARE, text))
     if off > bound:
         found.append(_off(off, bound, bool(found)))
@@ -121,7 +127,7 @@ def _near_ends(height: float, ends: tuple[End, ...], reach: float, units: Units)
     for end in ends:
         nearest[end.name] = min(abs(end.height - height), nearest.get(end.name, math.inf))
     return [
-        Flag(name, away, reach, f"{name} {_length(away, units)} away, felt over {_length(reach, units)}")
+        Flag(name, away, reach, f"{_length(away, units)} away, felt over {_length(reach, units)}", end=True)
         for name, away in nearest.items()
         if away < reach
     ]
@@ -136,8 +142,8 @@ def _near_level(run: Run, height: float, reach: float, units: Units) -> list[Fla
     if levels[0] > height + reach and len(crossed):
         when = f"passed by the level after {run.time[crossed[0]]:.3g} s"
     else:
-        when = f"level line {_length(away, units)} away"
-    return [Flag("level line", away, reach, f"{when}, felt over {_length(reach, units)}")]
+        when = f"{_length(away, units)} away"
+    return [Flag(LEVEL, away, reach, f"{when}, felt over {_length(reach, units)}", end=True)]
 
 
 def level_distance(levels: Floats, height: float) -> float:

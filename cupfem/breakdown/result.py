@@ -15,7 +15,7 @@ from numpy.typing import NDArray
 from cupfem.breakdown.errors import SETTLED, RungError, difference, longest_within, passing
 from cupfem.breakdown.holding import FirstTouch, Holds
 from cupfem.breakdown.map import Map
-from cupfem.breakdown.places import PROPERTIES, End, Flag, flags_at, nearest_end
+from cupfem.breakdown.places import LEVEL, PROPERTIES, End, Flag, flags_at, nearest_end
 from cupfem.breakdown.rungs import RUNGS, SIMPLEST_FIRST, Ladder, Servings
 from cupfem.errors import InputError
 from cupfem.quantities import Units, format_quantity, parse_quantity
@@ -228,6 +228,8 @@ class Comparison:
         limit = f"{GOOD_ENOUGH * (1.8 if units == 'us' else 1.0):.2g} {'degF' if units == 'us' else 'K'}"
         cup = f"{self.run.cup.title}, {self.run.serving.title}"
         found = self.verdict()
+        if not self.plain:
+            return f"{cup}: no station beside the drink is one-dimensional throughout; only the field tells."
         if found is None:
             return f"{cup}: no hand estimate is within {limit} of the field at stations beside the drink."
         rung, since, until = found
@@ -238,7 +240,16 @@ class Comparison:
         )
         told += f" from {since:.3g} s up to {self._until(until)}"
         where = f"from {low} to {high}" if len(self.plain) > 1 else f"at {low}"
-        return f"{told}, on the wall beside the drink {where}, away from ends{self._simpler(rung)}."
+        return f"{told}, on the wall beside the drink {where}, away from ends{self._mid_wall(rung, units)}{self._simpler(rung)}."
+
+    def _mid_wall(self, rung: str, units: Units) -> str:
+        """How long the rung is good enough at mid-wall, where the level passes there."""
+        place = int(np.argmin(np.abs(self.heights - 0.5 * self.run.cup.height)))
+        span = self.error(rung, place).span
+        if span is None or all(flag.name != LEVEL for flag in self.flagged[place]):
+            return ""
+        height = format_quantity(float(self.heights[place]), "length", units)
+        return f"; at {height}, where the level passes, up to {self._until(span[1])}"
 
     def _simpler(self, rung: str) -> str:
         """The rungs before this one, each with its longest span."""

@@ -6,6 +6,7 @@ import math
 from collections.abc import Sequence
 
 from cupfem.breakdown.map import BOUNDS
+from cupfem.breakdown.places import Flag
 from cupfem.breakdown.result import GOOD_ENOUGH, Comparison
 from cupfem.breakdown.rungs import RUNGS
 from cupfem.quantities import Units, format_quantity
@@ -99,13 +100,16 @@ def _flag_lines(slab: Comparison, units: Units) -> list[str]:
     for height in slab.heights[::-1]:
         flags = slab.flags(float(height), units)
         if flags:
-            lines.append(f"  {_length(float(height), units)}: " + "; ".join(_told(*each) for each in
-                         ((flag.name, flag.text) for flag in flags)))  # fmt: skip
+            lines.append(f"  {_length(float(height), units)}: {'; '.join(_flag_words(flags))}")
     return lines or ["  none of the stations"]
 
 
-def _told(name: str, text: str) -> str:
-    return text if name in text or name == "lateral flux" else f"{name} {text}"
+def _flag_words(flags: Sequence[Flag]) -> list[str]:
+    """The nearest end in full, further ends by their names, then what is no end."""
+    ends = sorted((flag for flag in flags if flag.end), key=lambda flag: flag.number)
+    words = [f"{flag.name} {flag.text}" for flag in ends[:1]]
+    words += [f"also near: {', '.join(flag.name for flag in ends[1:])}"] if ends[1:] else []
+    return words + [flag.text for flag in flags if not flag.end]
 
 
 def _map_lines(slab: Comparison, units: Units) -> list[str]:
@@ -124,7 +128,8 @@ def _map_lines(slab: Comparison, units: Units) -> list[str]:
 
 def _notes(slab: Comparison) -> list[str]:
     lines = ["Rungs a to c and e see the serving as poured: no sips, no refills, no steps of the room."]
-    if any(layer.material.surface_class == "board" for layer in slab.run.meridian.layers):
+    solids = [layer.material for layer in slab.run.meridian.layers if layer.material.kind == "solid"]
+    if any(material.surface_class == "board" for material in solids):
         lines.append(f"model: {MOISTURE}")
     return [*lines, CAUTION]
 
