@@ -18,7 +18,7 @@ from cupfem.films import Film
 from cupfem.meridian import Meridian
 from cupfem.mesh import SectionMesh
 from cupfem.quantities import Units
-from cupfem.run import headline
+from cupfem.run import headline, shown
 from cupfem.run.error_bars import error_bars
 from cupfem.run.pads import PadField
 from cupfem.run.touched import HoldFigures
@@ -162,6 +162,9 @@ class Run:
     def summary(self, units: Units = "si") -> str:
         """Headline figures, verdict and cautions as text."""
         return headline.text(self, units)
+
+    def _repr_html_(self) -> str:
+        return shown.html(self)
 
 
 def _along(heights: Floats, values: Floats, height: float) -> Floats:

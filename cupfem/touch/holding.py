@@ -9,6 +9,7 @@ from __future__ import annotations
 from collections.abc import Sequence
 from dataclasses import dataclass
 from functools import cached_property
+from html import escape
 
 import numpy as np
 from numpy.typing import NDArray
@@ -171,6 +172,9 @@ class Hold:
             lines.append(f"{1e3 * self.heights[index]:>7.4g}{mark}" + "".join(cells))
         lines += ["", *self.notes()]
         return "\n".join(lines)
+
+    def _repr_html_(self) -> str:
+        return f"<pre>{escape(self.table())}</pre>"
 
     def notes(self) -> list[str]:
         """What the figures rest on."""
