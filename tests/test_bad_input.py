@@ -227,7 +227,7 @@ SERVINGS = [
         '[drink]\nstirred = "10 s"\n[films]\nwetted = { coefficient = "400 W/(m^2 K)" }',
         "drink.stirred: would change nothing: films.wetted is a fixed film",
     ),
-    ('[drink]\nfoam_factor = 0', "drink.foam_factor: 0: must be more than zero"),
+    ("[drink]\nfoam_factor = 0", "drink.foam_factor: 0: must be more than zero"),
     (
         '[table]\nmaterial = "wood"\nresistance = "0.1 m^2 K/W"',
         "table.material: given together with resistance; keep one of the two",
