@@ -240,7 +240,8 @@ class Comparison:
         )
         told += f" from {since:.3g} s up to {self._until(until)}"
         where = f"from {low} to {high}" if len(self.plain) > 1 else f"at {low}"
-        return f"{told}, on the wall beside the drink {where}, away from ends{self._mid_wall(rung, units)}{self._simpler(rung)}."
+        told += f", on the wall beside the drink {where}, away from ends"
+        return f"{told}{self._mid_wall(rung, units)}{self._simpler(rung)}."
 
     def _mid_wall(self, rung: str, units: Units) -> str:
         """How long the rung is good enough at mid-wall, where the level passes there."""
