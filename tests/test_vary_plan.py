@@ -230,3 +230,22 @@ def test_the_plan_of_the_how_to_page_can_be_read():
     limits = Plan.from_text(blocks[2] + one_key)
     assert limits.recorded[-1] == "hold_time_s"
     Plan.from_text(blocks[3] + one_key)
+
+
+def test_a_sleeve_varies_by_its_file_and_by_its_values():
+    """The cup names a file for its sleeve; the case has the sleeve's layers, and no file any more."""
+    given = {"cup": "felt_sleeved.toml", "vary": [{"key": "sleeve.height", "list": ["40 mm", "45 mm"]}]}
+    first, second = cases(**given)
+    assert (first.error, second.error) == ("", "")
+    assert first.key != second.key
+    assert "felt" in first.text and "sleeve_felt" not in first.text
+    files = {"key": "sleeve", "list": ["sleeve_felt.toml", "sleeve_cork.toml"]}
+    felt, cork = cases(**{**given, "vary": [files]})
+    assert (felt.error, cork.error) == ("", "")
+    assert "cork" in cork.text and "cork" not in felt.text
+
+
+def test_a_profile_from_a_file_stays_with_the_case():
+    found = cases(cup="porcelain_beaker.toml", vary=[{"key": "serving.duration", "list": ["1 min"]}])
+    assert found[0].error == ""
+    assert "porcelain_beaker.csv" not in found[0].text

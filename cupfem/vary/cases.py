@@ -14,7 +14,7 @@ from typing import Any, Protocol
 import cupfem.errors
 from cupfem.cup import Cup
 from cupfem.errors import InputError
-from cupfem.inputs import InputFile, resolved_toml
+from cupfem.inputs import InputFile, resolved_toml, toml
 from cupfem.inputs.messages import quoted
 from cupfem.serving import Serving
 from cupfem.vary.paths import Data, Slot, find_slot, value_at, with_value
@@ -91,21 +91,25 @@ class CupModel:
             cup, serving = Cup.from_data(tables["cup"]), Serving.from_data(tables["serving"])
         except InputError as error:
             return Case(inputs, error=str(error))
-        text = f"{resolved_toml(cup)}\n[serving]\n{_nested(resolved_toml(serving))}"
-        job = CupJob(tables["cup"], tables["serving"], self.recorded, self.fineness)
+        resolved = resolved_toml(cup)
+        text = f"{resolved}\n[serving]\n{_nested(resolved_toml(serving))}"
+        # a cup as resolved names no other files, which a worker may not have
+        job = CupJob(tomllib.loads(resolved), tables["serving"], self.recorded, self.fineness)
         return Case(inputs, self._key(text), job, text)
 
     def _tables(self, settings: Mapping[Slot, Setting], inputs: dict[str, Value]) -> dict[str, Data]:
         tables = {"cup": self.cup, "serving": self.serving}
-        for slot in sorted(settings, key=lambda slot: bool(slot.parts)):  # whole files come first
+        for slot in sorted(settings, key=_turn):
             setting = settings[slot]
             if not slot.parts:
                 inputs[slot.key] = str(setting)
-                tables[slot.file] = read_data(self.folder / str(setting))
+                tables[slot.file] = read_data(self.folder / str(setting), slot.file)
                 continue
             if isinstance(setting, Change):
                 setting = setting.of(slot.key, _present(slot, tables[slot.file]), slot.kind)
             inputs[slot.key] = setting
+            if slot.parts == ("sleeve",):  # names a file, from the folder of the plan
+                setting = str(self.folder / str(setting))
             tables[slot.file] = with_value(tables[slot.file], slot.parts, setting)
         return tables
 
@@ -155,20 +159,23 @@ def cup_model(plan: Plan, folder: Path, evaluate: Evaluate) -> CupModel:
     cup, serving = first.get("cup", plan.cup), first.get("serving", plan.serving)
     if cup is None:
         raise InputError("cup", None, "missing", 'write cup = "double_wall.toml", a file beside the plan')
-    data: dict[str, Data] = {"cup": read_data(folder / str(cup)), "serving": {}}
+    data: dict[str, Data] = {"cup": read_data(folder / str(cup), "cup"), "serving": {}}
     Cup.load(folder / str(cup))  # for its message, which tells the line
     if serving is not None:
-        data["serving"] = read_data(folder / str(serving))
+        data["serving"] = read_data(folder / str(serving), "serving")
         Serving.load(folder / str(serving))
     return CupModel(data["cup"], data["serving"], folder, plan.recorded, plan.fineness, evaluate)
 
 
 @cache
-def read_data(path: Path) -> Data:
-    """The tables of a cup or serving file; InputError if it cannot be read."""
-    from cupfem.inputs import toml
-
-    return toml.parse(toml.read_text(path), str(path))
+def read_data(path: Path, file: str) -> Data:
+    """The tables of a cup or serving file, and of a sleeve that a cup names; InputError if not to be read."""
+    model: type[InputFile] = Cup if file == "cup" else Serving
+    data = model.prepared(toml.parse(toml.read_text(path), str(path)), path.parent)
+    if isinstance(data.get("sleeve"), str):
+        worn = toml.parse(toml.read_text(data["sleeve"]), data["sleeve"])
+        return data if "cup" in worn else {**data, "sleeve": worn}
+    return data
 
 
 def digest(parts: list[Any]) -> str:
@@ -202,6 +209,11 @@ def _leaves(data: Any, path: str) -> list[tuple[str, Value]]:
     else:
         return [(path, json.dumps(data) if isinstance(data, list) else data)]
     return [leaf for name, item in named for leaf in _leaves(item, f"{path}.{name}" if path else name)]
+
+
+def _turn(slot: Slot) -> tuple[bool, bool]:
+    """Whole files are put in first, then a sleeve, then single values."""
+    return bool(slot.parts), slot.parts != ("sleeve",)
 
 
 def _present(slot: Slot, data: Data) -> object:

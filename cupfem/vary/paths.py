@@ -59,6 +59,8 @@ def find_slot(key: str, files: Mapping[str, tuple[type[InputFile], Data]]) -> Sl
         )
     if parts in (("cup",), ("serving",)):
         return Slot(key, parts[0], (), "word")
+    if parts == ("sleeve",):
+        return Slot(key, "cup", parts, "word")
     file, inner = ("serving", parts[1:]) if parts[0] == "serving" else ("cup", parts)
     model, data = files[file]
     return Slot(key, file, inner, _kind(key, inner, [model], data))
