@@ -13,7 +13,6 @@ from functools import cached_property
 
 import numpy as np
 from numpy.typing import ArrayLike, NDArray
-from scipy.interpolate import CubicSpline
 
 from cupfem.errors import InputError
 
@@ -163,6 +162,8 @@ def spline(height: ArrayLike, radius: ArrayLike) -> Profile:
 
     C. de Boor, A Practical Guide to Splines, 1978, ch. IV, from memory.
     """
+    from scipy.interpolate import CubicSpline  # slow to import, and only curved profiles need it
+
     curve = CubicSpline(np.asarray(height, dtype=float), np.asarray(radius, dtype=float), bc_type="natural")
     z = np.linspace(float(np.min(height)), float(np.max(height)), CURVE_PIECES + 1)
     return Profile(z, np.asarray(curve(z)), smooth=True)

@@ -13,7 +13,6 @@ from itertools import pairwise
 
 import numpy as np
 from numpy.typing import NDArray
-from scipy.spatial import ConvexHull
 
 from cupfem.axisymmetry import AXISYMMETRIC, EdgePoints, Measure, source_load
 from cupfem.conduction import Conditions, Conduction, EdgeExchange, Exchange, GasLayer, Solid
@@ -264,6 +263,8 @@ def _hull(z: Floats, r: Floats) -> Floats:
     """Least concave function above the points (z, r), at z."""
     if np.ptp(r - np.interp(z, z[[0, -1]], r[[0, -1]])) < 1e-9:
         return r
+    from scipy.spatial import ConvexHull  # slow to import, and only pads on steps need it
+
     corners = np.sort(ConvexHull(np.array([z, 1e3 * r]).T).vertices)
     chord = np.interp(z[corners], z[[0, -1]], r[[0, -1]])
     upper = corners[r[corners] >= chord - 1e-12]
