@@ -3,16 +3,17 @@
 python tests/benchmarks/scaling.py --most 100000     cost per step, its exponent, and peak memory per unknown
 python tests/benchmarks/scaling.py --solver          the march against its own factor and solve calls
 
-The nodes across the wall stay at 13 or fewer; only the cells along it grow. Each size runs in a process of its own,
-so that the peak of its memory is its own. One thread.
+The nodes across the wall stay as they are; only the cells along it grow. Each size runs in a process of its
+own, so that the peak of its memory is its own. One thread.
 """
 
 from __future__ import annotations
 
 import os
 
-for name in ("OPENBLAS_NUM_THREADS", "OMP_NUM_THREADS", "MKL_NUM_THREADS"):
-    os.environ[name] = "1"
+os.environ["OPENBLAS_NUM_THREADS"] = "1"
+os.environ["OMP_NUM_THREADS"] = "1"
+os.environ["MKL_NUM_THREADS"] = "1"
 
 import argparse
 import json
@@ -100,8 +101,8 @@ def main() -> None:
         command = [sys.executable, __file__, "--one", str(size)]
         rows.append(json.loads(subprocess.run(command, check=True, capture_output=True, text=True).stdout))
         row = rows[-1]
-        print(f"{row['unknowns']:9.0f} unknowns: {1e3 * row['step_s']:9.2f} ms a step, "
-              f"{row['bytes_per_unknown']:6.0f} bytes an unknown at the peak, "
+        step, memory = 1e3 * row["step_s"], row["bytes_per_unknown"]
+        print(f"{row['unknowns']:9.0f} unknowns: {step:9.2f} ms a step, {memory:6.0f} bytes each at the peak, "
               f"march {row['march_over_solver']:.2f} times its factor and solve calls", flush=True)  # fmt: skip
     large = [row for row in rows if row["unknowns"] > 5_000]
     if len(large) > 1:
