@@ -240,3 +240,66 @@ def test_progress_is_shown_on_a_terminal_only(monkeypatch, capsys):
     assert told == []
     with jobs._progress(1.0, quiet=True) as tell:
         assert tell is None
+
+
+HELD = ["hold", CUP, "--duration", "40 s", "--longest", "30 s", "--fineness", "0.25"]
+
+
+def test_hold_prints_and_writes(capsys):
+    status, out, err = command(*HELD, "--asked", "10 s", "--out", "held", capsys=capsys)
+    assert (status, err) == (0, "")
+    words = " ".join(out.split())
+    assert "Hold time in s, thin to thick skin, by height and pick-up" in words
+    assert "cannot be held 10 s, picked up from 5 s on" in words
+    assert "grip band can be held 10 s from" in words
+    assert CAUTION in words
+    told = json.loads(Path("held/hold.json").read_text())
+    assert told["asked_s"] == 10.0
+    rows = list(csv.DictReader(Path("held/hold.csv").read_text().splitlines()))
+    heights = {row["height_mm"] for row in rows}
+    assert len(rows) == len(heights) * len({row["pick_up_s"] for row in rows})
+    shortest = min(float(row["hold_time_s"]) for row in rows if row["hold_time_s"])
+    assert told["worst"]["hold_time_s"] == pytest.approx(shortest, rel=1e-5)
+    band = told["band_that_cannot_be_held"][0]
+    short = [
+        float(row["height_mm"])
+        for row in rows
+        if float(row["pick_up_s"]) == band["pick_up_s"]
+        and float(row["hold_time_s"] or row["at_least_s"]) < 10
+    ]
+    assert [band["from_mm"], band["to_mm"]] == pytest.approx([min(short), max(short)], abs=0.01)
+    assert (Path("held") / "hold.png").is_file()
+
+
+def test_cups_side_by_side(capsys):
+    single = str(ROOT / "geometries" / "single_board.toml")
+    given = [*SHORT, "--against", single, "--out", "both"]
+    status, out, _ = command("pour", CUP, *given, capsys=capsys)
+    assert status == 0
+    assert "Side by side" in out
+    rows = list(csv.reader(Path("both/against.csv").read_text().splitlines()))
+    assert rows[0] == ["", "Double-wall board cup", "Single-wall board cup"]
+    told = {row[0]: row[1:] for row in rows}
+    held = [float(cell.removeprefix("more than ").split()[0]) for cell in told["can be held, thin skin"]]
+    assert held[0] > 3 * held[1]
+    other = json.loads(Path("both/against_1.json").read_text())
+    assert other["title"]["cup"] == "Single-wall board cup"
+    assert other["hold_time_s"] == pytest.approx(held[1], rel=5e-3)
+    assert (Path("both") / "against.png").is_file()
+
+
+@pytest.mark.parametrize(
+    ("given", "told"),
+    [
+        (["--asked", "soon"], "--asked"),
+        (["--asked", "0 s"], "no time to hold a cup for"),
+        (["--longest", "20"], "longest"),
+        (["--against", CUP] * 6, "at most 5 cups fit side by side"),
+    ],
+)
+def test_hold_refuses_in_one_line(capsys, given, told):
+    status, out, err = command(*HELD[:2], *given, "--duration", "5 s", "--fineness", "0.25", capsys=capsys)
+    assert (status, out) == (2, "")
+    assert err.count("\n") == 1
+    assert told in err
+    assert list(Path().iterdir()) == []

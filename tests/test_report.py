@@ -2,20 +2,26 @@
 
 import re
 import time
+from base64 import b64encode
 from dataclasses import replace
 from html import unescape
 from html.parser import HTMLParser
 from pathlib import Path
 
+import numpy as np
 import pytest
 
+from cupfem.against import Candidate, hold_rows, side_by_side
+from cupfem.breakdown import slab
 from cupfem.cli import main
 from cupfem.cup import Cup, load_cup
+from cupfem.figures import write_figures
 from cupfem.materials import sources_table
 from cupfem.pour import pour
 from cupfem.report import render, write_report
 from cupfem.run import CAUTION, FREE_WALL, headline
 from cupfem.serving import Serving
+from cupfem.touch.holding import hold_map
 
 CUP = Path(__file__).parents[1] / "geometries" / "double_wall.toml"
 SERVING = """
@@ -200,3 +206,48 @@ def test_the_command_writes_it(tmp_path, monkeypatch, capsys):
         main(arguments)
     assert ended.value.code == 0
     assert (tmp_path / capsys.readouterr().out.strip() / "report.html").is_file()
+
+
+@pytest.fixture(scope="module")
+def candidates(run):
+    other = pour(load_cup(CUP.with_name("single_board.toml")), run.serving, fineness=0.35)
+    heights, pick_ups = np.array([0.03, 0.05, 0.08]), np.array([5.0, 10.0])
+    return [
+        Candidate(each, hold_map(each, heights, pick_ups, longest=20.0, sections=1)) for each in (run, other)
+    ]
+
+
+def test_hold_times_are_told(run, candidates):
+    page = Page(render(run, candidates=candidates[:1], asked=15.0))
+    told = words(page.sections["How long it can be held"])
+    for row in hold_rows(candidates[0].hold, "si"):
+        assert words(" ".join(row)) in told
+    assert "grip band can be held 15 s from" in told
+    assert "contact conductance" in told
+    assert "Side by side" not in page.sections
+
+
+def test_cups_stand_side_by_side(run, candidates):
+    text = render(run, candidates=candidates)
+    told = words(Page(text).sections["Side by side"])
+    assert "A Double-wall board cup B Single-wall board cup" in told
+    for what, cells in side_by_side(candidates, 30.0):
+        assert words(" ".join([what, *cells])) in told
+    files = dict(re.findall(r'<pre id="(\w+\.toml)">(.*?)</pre>', text, re.DOTALL))
+    assert Cup.from_text(unescape(files["cup_2.toml"])) == candidates[1].run.cup
+    assert "--against cup_2.toml" in text
+
+
+def test_estimates_stand_beside_the_field(run):
+    found = slab(run)
+    page = Page(render(run, slab=found))
+    told = words(page.sections["Would a hand estimate have done?"])
+    assert words(found.sentence()) in told
+    assert words(found.table()) in told
+
+
+def test_pictures_that_exist_are_not_drawn_again(run, tmp_path):
+    drawn = write_figures(run, tmp_path)
+    text = render(run, drawn=drawn)
+    for path in drawn.values():
+        assert b64encode(path.read_bytes()).decode() in text

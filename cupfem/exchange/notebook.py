@@ -56,8 +56,8 @@ def _run(run: Run) -> tuple[dict[str, Any], dict[str, Any]]:
     """Variables (dimensions, values) and coordinates of a run."""
     series = run.series
     data: dict[str, Any] = {
-        "drink_degC": ("time_s", series.drink_temperature),
-        "level_mm": ("time_s", 1e3 * series.drink_level),
+        "drink_temperature_degC": ("time_s", series.drink_temperature),
+        "drink_level_mm": ("time_s", 1e3 * series.drink_level),
         "outer_degC": (("time_s", "height_mm"), series.outer_temperature),
     }
     flows = {f"{name.replace(' ', '_')}_W": ("time_s", power) for name, power in series.powers.items()}
