@@ -102,8 +102,9 @@ def main() -> None:
         rows.append(json.loads(subprocess.run(command, check=True, capture_output=True, text=True).stdout))
         row = rows[-1]
         step, memory = 1e3 * row["step_s"], row["bytes_per_unknown"]
-        print(f"{row['unknowns']:9.0f} unknowns: {step:9.2f} ms a step, {memory:6.0f} bytes each at the peak, "
-              f"march {row['march_over_solver']:.2f} times its factor and solve calls", flush=True)  # fmt: skip
+        print(f"{row['unknowns']:9.0f} unknowns: {step:9.2f} ms a step, {memory:6.0f} bytes each at peak, "
+              f"march {row['march_over_solver']:.2f} times its factor and solve calls",
+              flush=True)  # fmt: skip
     large = [row for row in rows if row["unknowns"] > 5_000]
     if len(large) > 1:
         logs = np.log([[row["unknowns"], row["step_s"]] for row in large])

@@ -2,9 +2,9 @@
 
     python tests/hard_use/error_bars.py --count 40 --seed 1
 
-Cases are shipped and random cups and servings (random_files.py), each poured as a user does and again with twice
-the fineness and a tenth of the tolerance. Wanted: 95 % within, and a stated error at most 5 times the true one in
-the median.
+Cases are shipped and random cups and servings (random_files.py), each poured as a user does and again with
+twice the fineness and a tenth of the tolerance. Wanted: 95 % within, and a stated error at most 5 times the
+true one in the median.
 """
 
 from __future__ import annotations
@@ -29,7 +29,7 @@ FINER, TIGHTER = 2.0, 0.1
 
 
 def cases(seed: int) -> Iterator[tuple[int, cupfem.Run, cupfem.Run]]:
-    """Number of a case, its run, and the much finer one; cases that are refused or do not converge are passed."""
+    """Number of a case, its run, and the much finer one; a case that is refused is passed over."""
     number = 0
     while True:
         number += 1

@@ -2,9 +2,9 @@
 
     python tests/hard_use/fuzz_files.py --count 10000 --seed 1 --keep /tmp/fuzz
 
-Each case is known by seed and number, so that one can be rerun alone: --only NUMBER. With --keep the files of
-cases with a fault are kept. A coarse tolerance is enough here: what is looked for is not accuracy. Time is that
-of the processor, so that a busy machine is not taken for a hang.
+Each case is known by seed and number, so that one can be rerun alone: --only NUMBER. With --keep the files
+of cases with a fault are kept. A coarse tolerance is enough here: what is looked for is not accuracy. Time is
+that of the processor, so that a busy machine is not taken for a hang.
 """
 
 from __future__ import annotations
@@ -46,8 +46,8 @@ passed it by less at the default fineness, and by up to 20 % of the jump at half
 LEDGER = 5e-4
 """Largest residual as a share of the drink's heat, on top of `JOULES`.
 
-At this tolerance the iteration leaves up to 2e-4 (measured), at the default one ten times less; a term that is
-lost makes 1e-3 and more.
+At this tolerance the iteration leaves up to 2e-4 (measured), at the default one ten times less; a term that
+is lost makes 1e-3 and more.
 """
 JOULES = 1e-2
 FAULTS = (

@@ -30,7 +30,8 @@ THICKNESSES = (15e-3, 50e-3, 0.3, 0.35, 0.5, 1.0, 2.0, 4.0, 15.0)  # mm
 WRONG_VALUES = (
     "", "nan mm", "inf mm", "-1 mm", "0 mm", "1e400 mm", "1e-300 mm", "0,5 mm", "9**9**9", "20 C", "12 oz",
     "5 kg", "none", "1 m", "1 nm", "1000 degC", "-300 degC", "\u0000", "ü" * 300, "cupstok board", "air",
-    -1, 0, 1, 1e308, 10**400, True, [], {}, [[]], [["0 s", "20 degC"]], ["1 mm", "2 mm"], {"coefficient": "1 W"},
+    -1, 0, 1, 1e308, 10**400, True, [], {}, [[]], [["0 s", "20 degC"]], ["1 mm", "2 mm"],
+    {"coefficient": "1 W"},
 )  # fmt: skip
 WRONG_KEYS = ("", "handle", "thickness", "temperature", "ü", "a.b", "layer", "material", "from", "cup", "lid")
 
@@ -182,8 +183,9 @@ def _random_serving(choose: random.Random, height: float) -> Data:
     if choose.random() < 0.5:
         serving["event"] = _events(choose, duration)
     if choose.random() < 0.15:
-        serving["pad"] = [{"height": _mm(0.5 * height), "width": "10 mm", "share": choose.choice([0.01, 0.25, 1.0]),
-                           "pick_up": f"{0.3 * duration:g} s"}]  # fmt: skip
+        share, pick_up = choose.choice([0.01, 0.25, 1.0]), f"{0.3 * duration:g} s"
+        pad = {"height": _mm(0.5 * height), "width": "10 mm", "share": share, "pick_up": pick_up}
+        serving["pad"] = [pad]
     return serving | ({"films": _films(choose)} if choose.random() < 0.2 else {})
 
 
