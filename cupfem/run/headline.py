@@ -195,7 +195,8 @@ def uncertainty_lines(run: Run) -> list[str]:
         word = "met" if space + time <= run.accuracy else "NOT met"
         lines.append(f"numerical: accuracy {run.accuracy:g} K {word}: {reached}")
     lines.append("model: inputs and physics left out; see the sources of each property")
-    if any(layer.material.surface_class == "board" for layer in run.meridian.layers):
+    solids = (layer.material for layer in run.meridian.layers if layer.material.kind == "solid")
+    if any(material.surface_class == "board" for material in solids):
         lines.append(f"model: {MOISTURE}")
     return lines
 
