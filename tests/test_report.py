@@ -251,3 +251,14 @@ def test_pictures_that_exist_are_not_drawn_again(run, tmp_path):
     text = render(run, drawn=drawn)
     for path in drawn.values():
         assert b64encode(path.read_bytes()).decode() in text
+
+
+def test_the_command_slab_writes_it_too(tmp_path, monkeypatch):
+    monkeypatch.chdir(tmp_path)
+    (tmp_path / "short.toml").write_text('duration = "20 s"', encoding="utf-8")
+    with pytest.raises(SystemExit) as ended:
+        main(["slab", str(CUP), "short.toml", "--fineness", "0.25", "--report", "--quiet", "--out", "hand"])
+    assert ended.value.code == 0
+    page = Page((tmp_path / "hand" / "report.html").read_text(encoding="utf-8"))
+    assert "Would a hand estimate have done?" in page.sections
+    assert "cupfem slab cup.toml serving.toml --fineness 0.25 --report" in page.sections["To run it again"]

@@ -7,7 +7,7 @@ from typing import TYPE_CHECKING, Annotated
 
 import typer
 
-from cupfem.cli.app import CupFile, Fineness, Force, Out, Quiet, UnitSystem, app
+from cupfem.cli.app import CupFile, Fineness, Force, Out, Quiet, Report, UnitSystem, app
 
 if TYPE_CHECKING:
     from cupfem.breakdown import Slab
@@ -28,6 +28,7 @@ def slab(
     quiet: Quiet = False,
     fineness: Fineness = 1.0,
     units: UnitSystem = "si",
+    report: Report = False,
 ) -> None:
     """Set hand estimates beside the field: table, where and when each fails, map, one sentence."""
     from rich.console import Console
@@ -46,6 +47,10 @@ def slab(
 
     def fill(place: Path) -> None:
         _write(found, place, units)
+        if report:
+            from cupfem.report import write_report
+
+            write_report(found.run, place / "report.html", units, slab=found)
 
     folder = (
         write_numbered(Path(), "slab", fill) if out is None else write_whole(Path(out), fill, force=force)

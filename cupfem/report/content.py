@@ -109,7 +109,7 @@ def content(
         "residual": f"{100 * abs(run.ledger.relative_residual):.1g} %",
         "materials": source_rows(run, units),
         "inputs": _inputs(candidates),
-        "command": _command(candidates, asked),
+        "command": _command(candidates, asked, slab),
         "versions": ", ".join(f"{name} {release}" for name, release in versions().items()),
     }
 
@@ -169,11 +169,12 @@ def _inputs(candidates: Sequence[Candidate]) -> dict[str, str]:
     return {"cup.toml": resolved_toml(run.cup), "serving.toml": resolved_toml(run.serving), **others}
 
 
-def _command(candidates: Sequence[Candidate], asked: float) -> str:
-    """The line that makes the page again: `hold` where the map is full, else `pour`."""
+def _command(candidates: Sequence[Candidate], asked: float, slab: Slab | None) -> str:
+    """The line that makes the page again: `hold` where the map is full, `slab` where touch was not judged."""
     first = candidates[0]
     full = first.hold is not None and len(first.hold.heights) >= HEIGHTS
-    line = "cupfem hold cup.toml serving.toml" if full else "cupfem pour cup.toml serving.toml"
+    job = "hold" if full else "slab" if slab is not None and first.run.touch is None else "pour"
+    line = f"cupfem {job} cup.toml serving.toml"
     line += "".join(f" --against cup_{number}.toml" for number in range(2, len(candidates) + 1))
     line += f' --asked "{asked:g} s"' if full else ""
     return f"{line} --fineness {first.run.fineness:g} --report"
