@@ -44,6 +44,8 @@ SHORT = ["--duration", "60 s"]
 TUTORIAL = DOCS / "tutorial.md"
 NEAR = 0.03
 """Relative closeness of the tutorial's figures, which are those of the default fineness."""
+LOG = "time_s,drink_temperature_degC,outer_z045mm_degC\n0,85,22\n20,84,70\n40,83,71\n"
+"""A log of a reader's own, invented."""
 KINDS = (Cup, Serving, Sleeve, Plan)
 
 
@@ -73,6 +75,7 @@ def place(tmp_path, monkeypatch):
     shutil.copytree(ROOT / "geometries", tmp_path / "geometries")
     for mesh in (ROOT / "tests" / "meshes").glob("tube_*.msh"):
         shutil.copy(mesh, tmp_path)
+    (tmp_path / "cup_3.csv").write_text(LOG, encoding="utf-8")
     monkeypatch.chdir(tmp_path)
     monkeypatch.setenv("COLUMNS", "110")
     return tmp_path
