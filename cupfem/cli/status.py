@@ -18,12 +18,21 @@ REFUSED, NOT_CONVERGED, STOPPED = 2, 3, 130
 def main(arguments: Sequence[str] | None = None) -> None:
     """Run the command line and end the process: 0, or the status of what went wrong."""
     given = sys.argv[1:] if arguments is None else list(arguments)
-    status = _status(given or ["--help"])
     try:
+        status = _status(given or ["--help"])
         sys.stdout.flush()
     except BrokenPipeError:
-        os.dup2(os.open(os.devnull, os.O_WRONLY), sys.stdout.fileno())
+        status = 0
+        _give_up_output()
+    except OSError as error:  # files are told of by name where they are written: this is the terminal's
+        status = _told(f"standard output: {(error.strerror or str(error)).lower()}", REFUSED)
+        _give_up_output()
     sys.exit(status)
+
+
+def _give_up_output() -> None:
+    """Let the interpreter flush what is left into nothing."""
+    os.dup2(os.open(os.devnull, os.O_WRONLY), sys.stdout.fileno())
 
 
 def _status(arguments: Sequence[str]) -> int:
