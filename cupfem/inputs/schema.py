@@ -2,12 +2,16 @@
 
 from __future__ import annotations
 
+import ast
+import inspect
+import textwrap
+from itertools import pairwise
 from typing import Any
 
 from pydantic.json_schema import GenerateJsonSchema, JsonSchemaValue
 from pydantic_core import CoreSchema, core_schema
 
-from cupfem.inputs.tables import InputFile
+from cupfem.inputs.tables import InputFile, Table
 
 
 class _Generator(GenerateJsonSchema):
@@ -23,8 +27,38 @@ class _Generator(GenerateJsonSchema):
             return inner
         return {**inner, "default": self.encode_default(_written(default, schema["schema"]))}
 
+    def model_schema(self, schema: core_schema.ModelSchema) -> JsonSchemaValue:
+        """With the docstrings of the fields as their descriptions."""
+        told = super().model_schema(schema)
+        fields, properties = schema["cls"].model_fields, told.get("properties", {})
+        for name, text in _docstrings(schema["cls"]).items():
+            key = (fields[name].alias or name) if name in fields else None
+            if key in properties:
+                properties[key]["description"] = text
+        return told
+
     def field_title_should_be_set(self, schema: Any) -> bool:
         return False
+
+
+def _docstrings(model: type) -> dict[str, str]:
+    """Attribute -> the text below it, of a model and its bases.
+
+    pydantic can read them as it makes a class, but then it parses every source at every start of the program.
+    """
+    found: dict[str, str] = {}
+    for each in reversed([base for base in model.__mro__ if issubclass(base, InputFile | Table)]):
+        if "[" in each.__name__:  # a generic with its parameters: its origin has the source
+            continue
+        (tree,) = ast.parse(textwrap.dedent(inspect.getsource(each))).body
+        assert isinstance(tree, ast.ClassDef)
+        for field, after in pairwise(tree.body):
+            if not (isinstance(field, ast.AnnAssign) and isinstance(field.target, ast.Name)):
+                continue
+            found.pop(field.target.id, None)
+            if isinstance(after, ast.Expr) and isinstance(after.value, ast.Constant):
+                found[field.target.id] = inspect.cleandoc(str(after.value.value))
+    return found
 
 
 def json_schema(model: type[InputFile], title: str) -> dict[str, Any]:

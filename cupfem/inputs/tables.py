@@ -27,7 +27,6 @@ class Table(BaseModel):
         frozen=True,
         validate_by_name=True,
         validate_by_alias=True,
-        use_attribute_docstrings=True,
     )
 
     place: ClassVar[str] = ""
