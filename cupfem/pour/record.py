@@ -14,9 +14,9 @@ from cupfem.run import Faces, Ledger, Series
 
 Floats = NDArray[np.float64]
 
-MEMORY = 60.0
-"""How long a wall keeps what a step added to its error [s]: a wall of 4 mm of stoneware follows its drink within
-a third of that; the drink keeps all of it."""
+MEMORY = 120.0
+"""How long a wall keeps what a step added to its error [s]: 4 mm of stoneware follow their drink within a fifth
+of that; the drink keeps all of it."""
 
 
 class Recorder:
