@@ -15,7 +15,7 @@ from cupfem.run import Faces, Ledger, Series
 Floats = NDArray[np.float64]
 
 MEMORY = 120.0
-"""How long a wall keeps what a step added to its error [s]: 4 mm of stoneware follow their drink within a fifth
+"""How long a wall keeps what a step added to its error [s]: 4 mm of stoneware follow a drink within a fifth
 of that; the drink keeps all of it."""
 
 
