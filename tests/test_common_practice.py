@@ -1,9 +1,9 @@
-"""Facts of the trade: common practice, no source. Orders of magnitude only; each names its wall, films and cup,
-and prints cupfem's own figure beside (run pytest with -s).
+"""Facts of the trade: common practice, no source. Orders of magnitude only; each names its wall, films and
+cup, and prints cupfem's own figure beside (run pytest with -s).
 
-The cup is the shipped double-wall board cup (board 0.33 / air 1.0 / board 0.30 mm, 95 mm tall, 313 ml brimful)
-with the default serving: water at 85 degC to 10 mm below the brim, an open cup in a room of 22 degC, 45 %
-relative humidity, 0.1 m/s, 10 minutes, correlations on all edges.
+The cup is the shipped double-wall board cup (board 0.33 / air 1.0 / board 0.30 mm, 95 mm tall, 313 ml
+brimful) with the default serving: water at 85 degC to 10 mm below the brim, an open cup in a room of 22 degC,
+45 % relative humidity, 0.1 m/s, 10 minutes, correlations on all edges.
 """
 
 from __future__ import annotations
@@ -40,7 +40,7 @@ def test_a_hand_finds_about_40_degrees_comfortable_and_designers_ask_for_ten_min
     assert cupfem.Serving().duration == pytest.approx(600.0)
 
 
-def test_a_laminar_plate_estimate_near_rayleigh_1e6_gives_about_6_5_W_per_m2_K() -> None:
+def test_a_laminar_plate_estimate_near_rayleigh_1e6_gives_about_six_and_a_half() -> None:
     """A wall 80 mm tall at 48 degC in still air of 22 degC: Rayleigh number near 1e6."""
     wall, room, length = 48.0, 22.0, 0.08
     air = air_film(wall, room, 101325.0)

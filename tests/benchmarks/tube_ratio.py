@@ -6,19 +6,17 @@ python tests/benchmarks/tube_ratio.py --profile  cupfem's march by function
 
 from __future__ import annotations
 
-import os
-
-for name in ("OPENBLAS_NUM_THREADS", "OMP_NUM_THREADS", "MKL_NUM_THREADS"):
-    os.environ[name] = "1"
-
 import argparse
 import cProfile
+import os
 import pstats
 import statistics
 import sys
 import time
 from pathlib import Path
 
+for name in ("OPENBLAS_NUM_THREADS", "OMP_NUM_THREADS", "MKL_NUM_THREADS"):
+    os.environ[name] = "1"
 sys.path[:0] = [str(Path(__file__).parents[1]), str(Path(__file__).parent)]
 
 import numpy as np  # noqa: E402
@@ -73,9 +71,11 @@ def main() -> None:
     solver = statistics.median(solver_seconds(march, pattern) for _ in range(5))
     plain = plain_tube.run()
     print(f"cupfem: {pattern.size} unknowns, {march.counters}, largest error {worst:.4f} K")
-    print(f"cupfem: march {ours:.3f} s (median of 5), its factor and solve calls alone {solver:.3f} s: {ours / solver:.1f}x")
-    print(f"plain script: {plain['unknowns']} unknowns, {plain['total_s']:.2f} s, error {plain['largest_error_K']:.3f} K")
-    print(f"ratio plain / cupfem: {plain['total_s'] / ours:.0f}")
+    share = ours / solver
+    print(f"march {ours:.3f} s (median of 5), its factor and solve calls alone {solver:.3f} s: {share:.1f}x")
+    seconds, error = plain["total_s"], plain["largest_error_K"]
+    print(f"plain script: {plain['unknowns']} unknowns, {seconds:.2f} s, error {error:.3f} K")
+    print(f"ratio plain / cupfem: {seconds / ours:.0f}")
 
 
 if __name__ == "__main__":
