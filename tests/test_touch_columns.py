@@ -116,8 +116,8 @@ def test_perfused_slab():
 )
 def test_body_in_air_and_water(coefficient, inner, loss):
     """Incropera et al., 6th ed. 2007, Ex. 3.12, p. 163: printed 34.8 C and 142 W in air, 28.2 C and 514 W in
-    water, for 1.8 m2; recomputed figures above (radiation of 5.9 W/(m2 K) in both). Metabolic heat enters as a
-    core warmer by 700/1800 K."""
+    water, for 1.8 m2; recomputed figures above (radiation of 5.9 W/(m2 K) in both). Metabolic heat enters as
+    a core warmer by 700/1800 K."""
     exact = bioheat.skin_on_tissue((0.03, 0.5), (0.003, 0.3), 1800, 700, 37, (coefficient, 24))
     assert exact[0] == pytest.approx(inner, abs=1e-5)
     assert 1.8 * exact[1] == pytest.approx(loss, abs=1e-4)

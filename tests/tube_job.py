@@ -2,7 +2,8 @@
 
 Inner radius 35 mm, board 0.30 / air 0.80 / board 0.30 mm, height 92 mm, no base, ends insulated, all at
 22 degC. Inside 400 W/(m2 K) to the drink below the level, 8 to 40 degC above; the level falls from 78 to
-30 mm in 600 s. Outside, local: 1.42 (|Ts - Ta| / 0.092 m)^(1/4) and radiation of emissivity 0.9, to 22 degC. Invented.
+30 mm in 600 s. Outside, local: 1.42 (|Ts - Ta| / 0.092 m)^(1/4) and radiation of emissivity
+0.9, to 22 degC. Invented.
 
 REFERENCE holds times [s], the outer face at z = 20, 46 and 85 mm and the drink [degC], from an independent
 computation with fourth-order elements and 1,241 steps, good to about 0.003 K.
