@@ -386,7 +386,7 @@ def test_writing_loads_no_meshio():
 @pytest.mark.parametrize("page", ["fields", "run_folder"])
 def test_the_examples_of_the_pages_run(tmp_path, monkeypatch, page):
     text = (ROOT / "docs" / "howto" / f"{page}.md").read_text(encoding="utf-8")
-    (example,) = re.findall(r"^```python\n(.*?)^```$", text, re.MULTILINE | re.DOTALL)
+    example, *_ = re.findall(r"^```python\n(.*?)^```$", text, re.MULTILINE | re.DOTALL)
     shutil.copytree(ROOT / "geometries", tmp_path / "geometries")
     monkeypatch.chdir(tmp_path)
     exec(compile(example, page, "exec"), {})

@@ -27,7 +27,7 @@ MOST_ITERATIONS = 12
 ITERATION_TOLERANCE = 5e-3
 """Newton changes below this share of the time tolerance end the iteration."""
 DIVERGED = 150.0
-"""Change of an iterate [K] with which a stage is given up."""
+"""Change of an iterate [K] with which a stage is given up; the first guess may be off by any amount."""
 SLOW = 0.25
 """An iteration whose changes fall by less than this factor has its matrix formed anew, once a stage."""
 EARLY = 3
@@ -228,7 +228,7 @@ class _Trial:
             value = value - change
             self.march.counters.iterations += 1
             size = system.largest(change, self.state)
-            if not size < DIVERGED:
+            if not size < (DIVERGED if iteration else np.inf):
                 return False
             if _expected(size, previous) < tolerance:
                 self._keep(stage, value, base, time)
