@@ -188,3 +188,18 @@ def test_every_start_settles(cup, lid, drink):
     problem = build(cup, Serving.from_text(text), 0.5)
     residual = problem.system.drink_state(problem.system.loads(problem.start, 0.0)[0])[2:]
     assert np.max(np.abs(residual)) < 1e-6
+
+
+@pytest.mark.parametrize("room", ["22 degC", "-30 degC"])
+def test_a_lid_that_nothing_drives_is_solved(room):
+    """No heat through the lid, none into the dry wall, dry air: the headspace has an unknown left over."""
+    serving = cupfem.Serving.from_data(
+        {
+            "duration": "60 s",
+            "room": {"temperature": room, "humidity": 0.0},
+            "lid": {"conductance": "0 W/(m^2 K)"},
+            "films": {"dry": {"coefficient": "0 W/(m^2 K)", "surroundings": "22 degC"}},
+        }
+    )
+    run = cupfem.pour(cupfem.load_cup(ROOT / "geometries" / "single_board.toml"), serving, companion=False)
+    assert abs(run.ledger.relative_residual) < 1e-6
