@@ -129,7 +129,7 @@ def main() -> int:
     recorder = Recorder()
     compare._compare = recorder.keep
     status = pytest.main(
-        [*map(str, (TESTS / "verification", TESTS / "test_tube.py")), "-q", "-p", "no:cacheprovider"],
+        [*map(str, (TESTS / "verification", TESTS / "test_tube.py")), "-q", "-n0", "-p", "no:cacheprovider"],
         plugins=[recorder],
     )
     cases = [case for case in recorder.cases.values() if case.comparisons and "faults" not in case.name]
