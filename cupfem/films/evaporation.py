@@ -6,6 +6,7 @@ Which one is the default, and why: docs/decisions/0002-evaporation-closure.md.
 from __future__ import annotations
 
 import math
+from abc import abstractmethod
 from dataclasses import dataclass
 from typing import ClassVar
 
@@ -94,12 +95,13 @@ class Shah(SurfaceClosure):
 class _PlateAnalogy(SurfaceClosure):
     """A plate correlation for heat and vapour alike: Sh = Nu Le^(1/3), buoyancy from the moist densities."""
 
+    @abstractmethod
     def _nusselt(self, rayleigh: Values, prandtl: Values) -> Values:
         """Nusselt number on the unstable side, on `_length`."""
-        raise NotImplementedError
 
+    @abstractmethod
     def _length(self, diameter: float) -> float:
-        raise NotImplementedError
+        """Length on which the correlation stands [m]."""
 
     def _layer(self, state: SurfaceState) -> tuple[FluidState, Values, Values]:
         """Air at the film temperature, Rayleigh number, relative density difference (light is positive)."""

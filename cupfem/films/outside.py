@@ -3,6 +3,7 @@
 from __future__ import annotations
 
 import math
+from abc import ABC, abstractmethod
 from dataclasses import dataclass, replace
 from typing import ClassVar, Literal
 
@@ -41,12 +42,12 @@ def air_buoyancy(surface: Values, surroundings: Values) -> Values:
     return rounded_difference(surface - surroundings) / kelvin
 
 
-class Convection:
+class Convection(ABC):
     """Base of the convection films: heat flux = coefficient (surface - surroundings)."""
 
+    @abstractmethod
     def coefficient(self, surface: Values, surroundings: Values, height: Values = 0.0) -> Values:
         """Film coefficient [W/(m2 K)] at temperatures in degC and heights in m."""
-        raise NotImplementedError
 
     def heat_flux(self, surface: Values, surroundings: Values, height: Values, time: float) -> Values:
         return self.coefficient(surface, surroundings, height) * (surface - surroundings)

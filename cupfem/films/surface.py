@@ -8,6 +8,7 @@ times a driving difference that is zero with the vapour-pressure difference and 
 
 from __future__ import annotations
 
+from abc import ABC, abstractmethod
 from dataclasses import dataclass
 from typing import ClassVar, NamedTuple
 
@@ -66,7 +67,7 @@ class SurfaceState(NamedTuple):
         return layer.diffusivity / vapour_diffusivity(self.film, self.pressure)
 
 
-class SurfaceClosure:
+class SurfaceClosure(ABC):
     """Base of the evaporation closures; a closure fills in `vapour`, `sensible` and `reached`.
 
     Arguments of the public methods: temperatures of water and air [degC], vapour pressure of the air and
@@ -111,15 +112,17 @@ class SurfaceClosure:
             )
         )
 
+    @abstractmethod
     def vapour(self, state: SurfaceState) -> Values:
-        raise NotImplementedError
+        """Vapour that leaves [kg/(m2 s)]."""
 
+    @abstractmethod
     def sensible(self, state: SurfaceState) -> Values:
-        raise NotImplementedError
+        """Coefficient of the sensible convection [W/(m2 K)]."""
 
+    @abstractmethod
     def applied(self, state: SurfaceState) -> list[Applied]:
         """What the state reaches of the closure's ranges of validity."""
-        raise NotImplementedError
 
 
 @dataclass(frozen=True)
