@@ -7,12 +7,15 @@ import signal
 import subprocess
 import sys
 import time
+from io import StringIO
 from pathlib import Path
 
 import pytest
+from rich.console import Console
 from typer.testing import CliRunner
 
 from cupfem.cli import app, jobs, main
+from cupfem.cli.show import _table
 from cupfem.errors import ConvergenceError
 from cupfem.materials import library
 from cupfem.run import CAUTION, load_run
@@ -303,3 +306,12 @@ def test_hold_refuses_in_one_line(capsys, given, told):
     assert err.count("\n") == 1
     assert told in err
     assert list(Path().iterdir()) == []
+
+
+def test_a_narrow_terminal_cuts_no_figure():
+    """Eighty columns and less: a cell goes on in the next line."""
+    console = Console(file=StringIO(), width=20)
+    console.print(_table([("0.913..2.58", "0.771..2.63")], ("5 s", "10 s")))
+    shown = console.file.getvalue()
+    assert "…" not in shown
+    assert sorted("".join(shown.split("\n")[1:]).replace(" ", "")) == sorted("0.913..2.580.771..2.63")

@@ -89,6 +89,8 @@ def _table(rows: Iterable[Sequence[str]], heads: Sequence[str] = ()) -> Table:
     table = Table(*heads, box=None, pad_edge=False, show_header=bool(heads), padding=(0, 2, 0, 0))
     for row in rows:
         table.add_row(*(escape(cell) for cell in row))
+    for column in table.columns:
+        column.overflow = "fold"  # a figure goes on in the next line; it is never cut
     return table
 
 
