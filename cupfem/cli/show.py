@@ -88,9 +88,10 @@ def show_folder(console: Console, folder: Path, quiet: bool) -> None:
 def _table(rows: Iterable[Sequence[str]], heads: Sequence[str] = ()) -> Table:
     table = Table(*heads, box=None, pad_edge=False, show_header=bool(heads), padding=(0, 2, 0, 0))
     for row in rows:
-        table.add_row(*(escape(cell) for cell in row))
+        # A range may break after its dots on a narrow terminal; a figure is never cut or broken within.
+        table.add_row(*(escape(cell.replace("..", ".. ")) for cell in row))
     for column in table.columns:
-        column.overflow = "fold"  # a figure goes on in the next line; it is never cut
+        column.overflow = "fold"
     return table
 
 
